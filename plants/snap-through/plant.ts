@@ -25,7 +25,7 @@ export default definePlant({
     const spring = softening * position - hardening * position ** 3;
     return [velocity, (u[0] + spring - damping * velocity) / mass];
   },
-  physics: [{ name: 'cubic spring force', of: (x, { hardening }) => hardening * x[0] ** 3 }],
+  physics: [{ name: 'cubic-force', of: (x, { hardening }) => hardening * x[0] ** 3 }],
   operatingPoint: { x: [0.01, 0], u: [0] },
   hazards: [
     'Once past the middle the stage accelerates by itself: fingers and tools must stay out of its stroke, with the power off too.',

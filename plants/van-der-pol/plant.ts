@@ -32,7 +32,7 @@ export default definePlant({
     const x2 = x[1];
     return [pace * x2, -stiffness * x1 + growth * x2 - saturation * x1 ** 2 * x2 + gain * u[0]];
   },
-  physics: [{ name: 'nonlinear damping', of: (x) => x[0] ** 2 * x[1] }],
+  physics: [{ name: 'nonlinear-damping', of: (x) => x[0] ** 2 * x[1] }],
   operatingPoint: { x: [0, 0], u: [0] },
   hazards: [
     'An academic oscillator without a machine; where it stands for one, expect it to swing up from rest without any input.',
