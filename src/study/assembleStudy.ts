@@ -38,7 +38,8 @@ export function assembleStudy(
           values: settings as Record<string, number | string>,
         })) ?? defaultParts(plant),
     },
-    predictor,
+    // The controller's matrices are constant, and so is the predictor's effect of the input.
+    predictor: { form: 'linear', ...predictor },
     controller: toController(values.controller, plant, references, inUnits),
     scenario: {
       duration: values.scenario.duration ?? Math.max(200 * sampleTime, longestOf(references)),

@@ -1,5 +1,5 @@
 import type { Channel, Plant } from '../plant/plant.ts';
-import { convertQuantity, findChannel } from './channels.ts';
+import { convertQuantity, findChannel, unitName } from './channels.ts';
 import type { Problem } from './problem.ts';
 import type { ChannelQuantity, Spot } from './reader.ts';
 import type { StudyDraft, StudyValues } from './readStudy.ts';
@@ -31,7 +31,7 @@ export function checkRanges({ file, values, lineOf }: StudyDraft, plant: Plant):
     return quantity && value !== null ? { value, spot: quantity.spot } : null;
   };
   checkInputs(values, plant, levelOf, refuse);
-  checkOutputs(values, levelOf, lineOf, refuse);
+  checkOutputs(values, plant, levelOf, lineOf, refuse);
   for (const level of referenceLevels(values, levelOf)) {
     const wayOut = "check the unit, or widen the range in the plant's file";
     checkWithin(level, plant, "the output's working range", wayOut, refuse);
@@ -52,9 +52,11 @@ function checkWithin(level: Level | null, plant: Plant, what: string, wayOut: st
   refuse(level.spot, must, `${show(level.value)}${suffix(channel)}`, wayOut);
 }
 
-function checkOrder(min: Level | null, max: Level | null, refuse: Refuse): void {
-  if (!min || !max || min.value < max.value) return;
-  refuse(min.spot, `less than max (${show(max.value)})`, show(min.value), 'swap the two or correct one');
+function checkOrder(min: Level | null, max: Level | null, plant: Plant, refuse: Refuse): void {
+  const channel = min && findChannel(plant, min.spot.channel);
+  if (!channel || !max || min.value < max.value) return;
+  const must = `less than max (${show(max.value)}${suffix(channel)})`;
+  refuse(min.spot, must, `${show(min.value)}${suffix(channel)}`, 'swap the two or correct one');
 }
 
 function checkInputs(values: Values, plant: Plant, levelOf: LevelOf, refuse: Refuse): void {
@@ -63,19 +65,27 @@ function checkInputs(values: Values, plant: Plant, levelOf: LevelOf, refuse: Ref
     for (const level of [min, max]) {
       checkWithin(level, plant, "the plant's own limits", 'tighten it: the actuator cannot do more', refuse);
     }
-    checkOrder(min, max, refuse);
-    const fastest = plant.inputs.find((channel) => channel.name === name)?.rate ?? Number.POSITIVE_INFINITY;
-    if (rate && !(rate.value > 0 && rate.value <= fastest)) {
-      const most = Number.isFinite(fastest) ? ` and ≤ ${show(fastest)}, the plant's own` : '';
-      refuse(rate.spot, `a rate > 0${most}`, show(rate.value), 'correct the number or its unit');
+    checkOrder(min, max, plant, refuse);
+    const channel = plant.inputs.find((other) => other.name === name);
+    const fastest = channel?.rate ?? Number.POSITIVE_INFINITY;
+    if (channel && rate && !(rate.value > 0 && rate.value <= fastest)) {
+      const unit = unitName(channel, true);
+      const most = Number.isFinite(fastest) ? ` and ≤ ${show(fastest)} ${unit}, the plant's own` : '';
+      refuse(rate.spot, `a rate > 0${most}`, `${show(rate.value)} ${unit}`, 'correct the number or its unit');
     }
   }
 }
 
-function checkOutputs(values: Values, levelOf: LevelOf, lineOf: StudyDraft['lineOf'], refuse: Refuse): void {
+function checkOutputs(
+  values: Values,
+  plant: Plant,
+  levelOf: LevelOf,
+  lineOf: StudyDraft['lineOf'],
+  refuse: Refuse,
+): void {
   const horizon = values.controller?.horizon ?? Number.POSITIVE_INFINITY;
   for (const [name, { min, max, limit, fromStep }] of values.controller?.outputs ?? []) {
-    checkOrder(levelOf(min), levelOf(max), refuse);
+    checkOrder(levelOf(min), levelOf(max), plant, refuse);
     const at = (key: string): Spot => ({ key, line: lineOf(key) });
     const key = `controller.outputs.${name}`;
     if (limit === 'hard' && min === null && max === null) {

@@ -17,12 +17,7 @@ function entriesOf(reader: Reader, map: YAMLMap, spot: Spot): Map<string, Entry>
     const keyNode = reader.resolve(pair.key);
     const line = keyNode ? reader.lineOf(pair.key as Node) : spot.line;
     if (!isScalar(keyNode) || typeof keyNode.value !== 'string') {
-      reader.refuse(
-        { key: spot.key, line },
-        'keys that are words',
-        describeNode(keyNode),
-        'write key: value',
-      );
+      reader.refuse({ key: spot.key, line }, 'a word as key', describeNode(keyNode), 'write key: value');
       continue;
     }
     const key = join(spot.key, keyNode.value);

@@ -29,7 +29,7 @@ export interface StudyDraft {
  */
 export function readStudy(text: string, file: string): StudyDraft {
   const counter = new LineCounter();
-  const document = parseDocument(text, { lineCounter: counter, uniqueKeys: false, logLevel: 'silent' });
+  const document = parseDocument(text, { lineCounter: counter, uniqueKeys: false, logLevel: 'error' });
   const reader = createReader(file, document, counter);
   const lineOf = (key: string): number => {
     const line = reader.lines.get(key);
@@ -40,7 +40,11 @@ export function readStudy(text: string, file: string): StudyDraft {
 
   const unresolved = findUnresolved(document, reader.lineOf, file);
   if (document.errors.length > 0 || unresolved.length > 0) {
-    const problems = [...document.errors.map((error) => describeSyntax(error, file)), ...unresolved];
+    // What the parser says after its first error is mostly a consequence of it.
+    const problems = [
+      ...document.errors.slice(0, 1).map((error) => describeSyntax(error, file)),
+      ...unresolved,
+    ];
     return { ...draft, values: {}, problems: sortProblems(problems) };
   }
   const root = reader.resolve(document.contents);

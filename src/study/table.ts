@@ -91,7 +91,6 @@ const LIFTING = group({
 });
 
 const PREDICTOR = group({
-  form: optional(choice(['linear']), 'linear', 'Form of the predictor: z⁺ = A z + B u'),
   route: optional(
     choice(['auto', 'gram', 'orthogonal']),
     'auto',

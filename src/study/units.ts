@@ -3,7 +3,7 @@ import Qty from 'js-quantities';
 /** What a unit's text is worth against another: a factor, or why there is none. */
 export type Conversion = { readonly factor: number } | 'unknown' | 'other-dimension';
 
-const QUANTITY = /^([+-]?(?:\d+\.?\d*|\.\d+)(?:[eE][+-]?\d+)?)\s*(\S.*)$/u;
+const QUANTITY = /^([+-]?(?:\d+\.?\d*|\.\d+)(?:[eE][+-]?\d+)?)\s*(1\/\S.*|[^\s\d.+-].*)$/u;
 /** Spellings that a data sheet has and the unit table has not. */
 const SPELLINGS: readonly (readonly [RegExp, string])[] = [
   [/·|⋅/g, '*'],

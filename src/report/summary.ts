@@ -1,0 +1,157 @@
+import type { Caution, Severity } from '../findings/caution.ts';
+import type { LoopRun, StudyResult } from '../findings/studyResult.ts';
+import type { LimitReport, TrackingReport } from '../loop/record.ts';
+
+/** The terminal that the summary must fit. */
+export const SCREEN = { rows: 24, columns: 80 } as const;
+
+const LABELS: Record<LoopRun['name'], string> = {
+  lifted: 'lifted',
+  'plain-linear': 'plain linear regression',
+  linearised: 'linearised at the operating point',
+};
+
+/** Three significant digits, trailing zeros dropped; `1.2e-5` where plain digits would be long. */
+export function formatFigure(value: number): string {
+  if (!Number.isFinite(value))
+    return Number.isNaN(value) ? 'not a number' : value > 0 ? 'infinite' : '-infinite';
+  const size = Math.abs(value);
+  if (size !== 0 && (size < 1e-3 || size >= 1e5)) {
+    return value
+      .toExponential(1)
+      .replace(/\.0(?=e)/, '')
+      .replace('e+', 'e');
+  }
+  return String(Number(value.toPrecision(3)));
+}
+
+const withUnit = (value: number, unit: string) =>
+  unit === '1' ? formatFigure(value) : `${formatFigure(value)} ${unit}`;
+const percent = (share: number) => `${formatFigure(100 * share)} %`;
+const plural = (count: number, noun: string) => `${count} ${noun}${count === 1 ? '' : 's'}`;
+
+/** At most `rows` entries, the last of them saying how many more there are. */
+function firstOf(lines: readonly string[], rows: number, where: string): string[] {
+  if (lines.length <= rows) return [...lines];
+  const kept = Math.max(0, rows - 1);
+  return [...lines.slice(0, kept), `and ${lines.length - kept} more, see ${where}`];
+}
+
+/**
+ * The closing summary: does lifting help and how far ahead, tracking, limits broken, cost beside the rivals, cautions,
+ * where the files are. Fits one screen of 24 rows of 80 columns, the shell's prompt included.
+ *
+ * @param files what was written and where, one line each, two lines at most.
+ */
+export function writeSummary(
+  result: StudyResult,
+  cautions: readonly Caution[],
+  files: readonly string[],
+): string {
+  const lifted = result.runs[0];
+  const broken = lifted ? lifted.report.limits.filter(({ count }) => count > 0) : [];
+  // What the other parts leave of the screen is shared by limits, acceptance and cautions.
+  const sections: [string, string[]][] = [
+    ['Lifting', describeLifting(result)],
+    ['Tracking', firstOf(lifted?.report.tracking.map(describeTracking) ?? [], 3, 'report.html')],
+    ['Limits', describeLimits(lifted, broken)],
+    ['Cost', describeCost(result.runs)],
+    ['Solves', lifted ? [describeSolves(lifted)] : []],
+    ['Accepted', firstOf(result.acceptance.map(describeAcceptance), 2, 'report.html')],
+    ['Files', files.slice(0, 2)],
+  ];
+  const used = 1 + sections.reduce((rows, [, lines]) => rows + lines.length, 0);
+  // The hazards take one line, the prompt another.
+  const forCautions = Math.max(2, SCREEN.rows - 2 - used);
+  sections.splice(6, 0, ['Cautions', describeCautions(cautions, forCautions)]);
+  const lines = [
+    cut(
+      `${result.title}: ${result.plant.name}, sample time ${withUnit(result.sampleTime, 's')}`,
+      SCREEN.columns,
+    ),
+  ];
+  for (const [name, entries] of sections) {
+    entries.forEach((entry, i) => {
+      const label = (i === 0 ? name : '').padEnd(10);
+      // A path is never cut: it is there to be copied.
+      lines.push(name === 'Files' ? `${label}${entry}` : cut(`${label}${entry}`, SCREEN.columns));
+    });
+  }
+  lines.push('Holds for the model and scenario shown; keep independent limits and emergency stop.');
+  return `${lines.join('\n')}\n`;
+}
+
+function cut(line: string, columns: number): string {
+  return line.length <= columns ? line : `${line.slice(0, columns - 1)}…`;
+}
+
+function describeLifting({ trust, sampleTime, design }: StudyResult): string[] {
+  const { helps, ratio, upTo } = trust.lifting;
+  const ahead = (steps: number) => `${plural(steps, 'step')} (${withUnit(steps * sampleTime, 's')})`;
+  const horizon = ahead(design.problem.horizon);
+  const first = helps
+    ? `helps: ${formatFigure(ratio)} of plain linear regression's error, up to ${ahead(upTo)}`
+    : `does NOT help: ${formatFigure(ratio)} of plain linear regression's error`;
+  const trusted =
+    trust.trustedSteps > 0
+      ? `trusted to ${percent(trust.tolerance)} for ${ahead(trust.trustedSteps)}`
+      : `not even one step within ${percent(trust.tolerance)}`;
+  return [first, `${trusted}; horizon ${horizon}`];
+}
+
+function describeTracking({ output, unit, rms, worst, overshoot, settling, offset }: TrackingReport): string {
+  const parts = [`rms ${withUnit(rms, unit)}`, `worst ${withUnit(worst, unit)}`];
+  if (overshoot !== null) parts.push(`overshoot ${formatFigure(overshoot)} %`);
+  if (settling !== null) parts.push(`settles ${withUnit(settling, 's')}`);
+  if (offset !== null) parts.push(`offset ${withUnit(offset, unit)}`);
+  return `${output}: ${parts.join(', ')}`;
+}
+
+function describeLimits(lifted: LoopRun | undefined, broken: readonly LimitReport[]): string[] {
+  if (!lifted) return [];
+  const stopped = lifted.record.diverged ? ['the loop DIVERGED and was stopped'] : [];
+  if (broken.length === 0) {
+    const checked = lifted.report.limits.length;
+    return [...stopped, `none of ${checked} broken, also between samples`];
+  }
+  const worstFirst = [...broken].sort((a, b) => b.worstOfRange - a.worstOfRange);
+  const lines = worstFirst.map(({ kind, channel, unit, count, worst, worstOfRange, longest }) => {
+    const of = kind === 'rate' ? `${channel} rate` : channel;
+    const inUnit = withUnit(worst, kind === 'rate' && !unit.endsWith('/s') ? `${unit}/s` : unit);
+    const times = count === 1 ? 'once' : `${count} times`;
+    return `${of} broken ${times}, worst by ${inUnit} (${percent(worstOfRange)}), longest ${withUnit(longest, 's')}`;
+  });
+  return [...stopped, ...firstOf(lines, 4, 'report.html')];
+}
+
+function describeCost(runs: readonly LoopRun[]): string[] {
+  const own = runs[0]?.record.cost.total;
+  return runs.map(({ name, record }, i) => {
+    const cost = formatFigure(record.cost.total);
+    const ratio = i > 0 && own > 0 ? `, ${formatFigure(record.cost.total / own)} times` : '';
+    return `${cost}  ${LABELS[name]}${ratio}${record.diverged ? ', DIVERGED' : ''}`;
+  });
+}
+
+function describeSolves({ record, report }: LoopRun): string {
+  const { median, q95, worst } = report.iterations;
+  return `${report.notOptimal} of ${record.steps} not optimal; iterations median ${median}, 95 % ${q95}, worst ${worst}`;
+}
+
+function describeAcceptance(row: StudyResult['acceptance'][number]): string {
+  const verdict = row.met ? 'met' : 'MISSED';
+  return `${row.name}: ${withUnit(row.reached, row.unit)} of ${withUnit(row.limit, row.unit)} allowed, ${verdict}`;
+}
+
+function describeCautions(cautions: readonly Caution[], rows: number): string[] {
+  const order: readonly Severity[] = ['error', 'warning', 'note'];
+  const counts = order.map((severity) => {
+    const count = cautions.filter((caution) => caution.severity === severity).length;
+    return plural(count, severity);
+  });
+  const pressing = order
+    .slice(0, 2)
+    .flatMap((severity) => cautions.filter((caution) => caution.severity === severity))
+    .map(({ severity, code, sentence }) => `${severity} ${code}: ${sentence}`);
+  return [counts.join(', '), ...firstOf(pressing, rows - 1, 'report.html')];
+}
