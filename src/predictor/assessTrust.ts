@@ -13,7 +13,7 @@ export interface TrustRequest {
   readonly dataset: Dataset;
   readonly predictor: Predictor;
   readonly bound: BoundLifting;
-  /** From `fitPlainLinear` and `linearisePredictor`; no linearisation (null) where the coordinates are not the states. */
+  /** From `fitPlainLinear` and `linearisePredictor`, scaled as the predictor is; no linearisation (null) where the coordinates are not the states. */
   readonly rivals: { readonly plainLinear: Predictor; readonly linearised: Predictor | null };
   /** The controller's horizon in steps, over which the verdict is taken. */
   readonly horizon: number;

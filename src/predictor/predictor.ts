@@ -9,10 +9,11 @@ export interface FitSummary {
   readonly route: 'gram' | 'orthogonal' | 'given';
   /** Why this route: shape and conditioning in one sentence's worth of numbers, made into words by `findings`. */
   readonly samples: number;
-  /** 2-norm condition number of the regressor `[Z; U]` with standardised rows. */
+  /** 2-norm condition number of the regressor `[Z; U]` with standardised rows, at most 1/ε. */
   readonly condition: number;
   /** Decimal digits lost to conditioning by the route taken. */
   readonly digitsLost: number;
+  /** On regressors of mean square one, times the number of samples; the constant is not penalised. */
   readonly ridge: number;
   /** Ridges tried and their multi-step error on the choose split; empty when the ridge was given. */
   readonly ridgesTried: readonly { readonly ridge: number; readonly error: number }[];
@@ -20,7 +21,10 @@ export interface FitSummary {
   readonly rank: number;
   readonly regressors: number;
   readonly dependent: readonly string[];
-  /** RMS one-step residual of each lifted function on the fit split, relative to its RMS. */
+  /**
+   * RMS one-step residual of each lifted function on the fit split, relative to its RMS; the Gram route does not resolve
+   * it below about 1e-7.
+   */
   readonly residuals: readonly number[];
 }
 

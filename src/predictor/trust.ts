@@ -1,7 +1,10 @@
 /** The predictors compared on a trust curve. */
 export type TrustModel = 'lifted' | 're-lifted' | 'plain-linear' | 'linearised' | 'persistence' | 'floor';
 
-/** Prediction error of one model against steps ahead, on held-out trajectories. */
+/**
+ * Prediction error of one model against steps ahead, on held-out trajectories. Infinity where a prediction left the
+ * range of numbers (re-lifted and bilinear models may).
+ */
 export interface TrustSeries {
   readonly model: TrustModel;
   /** RMS over coordinates and starts, each coordinate divided by its half range; one entry a step ahead. */
@@ -38,7 +41,10 @@ export interface Spectrum {
   readonly real: readonly number[];
   readonly imaginary: readonly number[];
   readonly radius: number;
-  /** Time constant of the fastest decaying mode that matters and of the slowest, seconds; for the sample-time caution. */
+  /**
+   * Seconds, of the modes that show in the states' step response: the smallest `1/|s|`, `s = ln λ / Ts` (oscillation
+   * included), for the sample-time caution, and the largest time constant of decay; Infinity where there is no such mode.
+   */
   readonly fastest: number;
   readonly slowest: number;
 }

@@ -52,6 +52,17 @@ describe('the spectrum of a predictor', () => {
     expect(slowest).toBeCloseTo(-0.1 / Math.log(0.8), 12);
   });
 
+  it('leaves out a mode whose share in the step response is below 2 % of the largest', () => {
+    const A = [
+      [0.8, 0, 0],
+      [0, 0.3, 0],
+      [0, 0, 1],
+    ];
+    // Shares b / (1 − λ): 5 against b2 / 0.7.
+    expect(spectrumOf(A, [[1], [0.06], [0]]).fastest).toBeCloseTo(-0.1 / Math.log(0.8), 12);
+    expect(spectrumOf(A, [[1], [0.08], [0]]).fastest).toBeCloseTo(-0.1 / Math.log(0.3), 12);
+  });
+
   it('has no slowest decay when the only mode grows, and reports the radius', () => {
     const { slowest, radius } = spectrumOf(
       [
