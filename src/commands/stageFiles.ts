@@ -30,7 +30,7 @@ export interface StageContents {
 export type Stage = keyof StageContents;
 
 /** For each stage its file, the stages that it reads, and the parts of the study that it reads itself. */
-const STAGES = {
+export const STAGES = {
   experiment: { file: 'dataset.json', reads: [], uses: ['plant', 'seed', 'sampleTime', 'experiment'] },
   fit: {
     file: 'predictor.json',

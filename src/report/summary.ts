@@ -53,7 +53,7 @@ export function writeSummary(
   // What the other parts leave of the screen is shared by limits, acceptance and cautions.
   const sections: [string, string[]][] = [
     ['Lifting', describeLifting(result)],
-    ['Tracking', firstOf(lifted?.report.tracking.map(describeTracking) ?? [], 3, 'report.html')],
+    ['Tracking', describeTracking(lifted?.report.tracking ?? [])],
     ['Limits', describeLimits(lifted, broken)],
     ['Cost', describeCost(result.runs)],
     ['Solves', lifted ? [describeSolves(lifted)] : []],
@@ -77,7 +77,7 @@ export function writeSummary(
       lines.push(name === 'Files' ? `${label}${entry}` : cut(`${label}${entry}`, SCREEN.columns));
     });
   }
-  lines.push('Holds for the model and scenario shown; keep independent limits and emergency stop.');
+  lines.push('Holds for the model and scenario shown. Keep independent limits and e-stop.');
   return `${lines.join('\n')}\n`;
 }
 
@@ -90,8 +90,8 @@ function describeLifting({ trust, sampleTime, design }: StudyResult): string[] {
   const ahead = (steps: number) => `${plural(steps, 'step')} (${withUnit(steps * sampleTime, 's')})`;
   const horizon = ahead(design.problem.horizon);
   const first = helps
-    ? `helps: ${formatFigure(ratio)} of plain linear regression's error, up to ${ahead(upTo)}`
-    : `does NOT help: ${formatFigure(ratio)} of plain linear regression's error`;
+    ? `helps: error ${formatFigure(ratio)} of plain linear's, better up to ${ahead(upTo)}`
+    : `does NOT help: error ${formatFigure(ratio)} of plain linear regression's`;
   const trusted =
     trust.trustedSteps > 0
       ? `trusted to ${percent(trust.tolerance)} for ${ahead(trust.trustedSteps)}`
@@ -99,13 +99,33 @@ function describeLifting({ trust, sampleTime, design }: StudyResult): string[] {
   return [first, `${trusted}; horizon ${horizon}`];
 }
 
-function describeTracking({ output, unit, rms, worst, overshoot, settling, offset }: TrackingReport): string {
-  const parts = [`rms ${withUnit(rms, unit)}`, `worst ${withUnit(worst, unit)}`];
-  if (overshoot !== null) parts.push(`overshoot ${formatFigure(overshoot)} %`);
-  if (settling !== null) parts.push(`settles ${withUnit(settling, 's')}`);
-  if (offset !== null) parts.push(`offset ${withUnit(offset, unit)}`);
-  return `${output}: ${parts.join(', ')}`;
+/** Cells in columns of fixed widths; a long first cell is cut so that the figures stay in their columns. */
+function layOut(widths: readonly number[], cells: readonly string[]): string {
+  return cells
+    .map((cell, i) => (i === 0 ? cut(cell, widths[0] - 1) : cell).padEnd(widths[i] ?? 0))
+    .join('')
+    .trimEnd();
 }
+
+const TRACKING_WIDTHS = [13, 12, 12, 11, 11];
+
+function describeTracking(outputs: readonly TrackingReport[]): string[] {
+  if (outputs.length === 0) return [];
+  const rows = outputs.map(({ output, unit, rms, worst, overshoot, settling, offset }) =>
+    layOut(TRACKING_WIDTHS, [
+      output,
+      withUnit(rms, unit),
+      withUnit(worst, unit),
+      overshoot === null ? '-' : `${formatFigure(overshoot)} %`,
+      settling === null ? '-' : withUnit(settling, 's'),
+      offset === null ? '-' : withUnit(offset, unit),
+    ]),
+  );
+  const head = layOut(TRACKING_WIDTHS, ['output', 'rms error', 'worst', 'overshoot', 'settling', 'offset']);
+  return [head, ...firstOf(rows, 3, 'report.html')];
+}
+
+const LIMIT_WIDTHS = [17, 8, 15, 11, 11];
 
 function describeLimits(lifted: LoopRun | undefined, broken: readonly LimitReport[]): string[] {
   if (!lifted) return [];
@@ -115,13 +135,18 @@ function describeLimits(lifted: LoopRun | undefined, broken: readonly LimitRepor
     return [...stopped, `none of ${checked} broken, also between samples`];
   }
   const worstFirst = [...broken].sort((a, b) => b.worstOfRange - a.worstOfRange);
-  const lines = worstFirst.map(({ kind, channel, unit, count, worst, worstOfRange, longest }) => {
-    const of = kind === 'rate' ? `${channel} rate` : channel;
-    const inUnit = withUnit(worst, kind === 'rate' && !unit.endsWith('/s') ? `${unit}/s` : unit);
-    const times = count === 1 ? 'once' : `${count} times`;
-    return `${of} broken ${times}, worst by ${inUnit} (${percent(worstOfRange)}), longest ${withUnit(longest, 's')}`;
-  });
-  return [...stopped, ...firstOf(lines, 4, 'report.html')];
+  const rows = worstFirst.map(({ kind, channel, unit, count, worst, worstOfRange, longest, first }) =>
+    layOut(LIMIT_WIDTHS, [
+      kind === 'rate' ? `${channel} rate` : channel,
+      String(count),
+      withUnit(worst, unit),
+      percent(worstOfRange),
+      withUnit(longest, 's'),
+      first === null ? '-' : withUnit(first, 's'),
+    ]),
+  );
+  const head = layOut(LIMIT_WIDTHS, ['BROKEN', 'times', 'worst by', 'of range', 'longest', 'first at']);
+  return [...stopped, head, ...firstOf(rows, 3, 'report.html')];
 }
 
 function describeCost(runs: readonly LoopRun[]): string[] {
