@@ -24,8 +24,9 @@ export interface DataRegion {
  * spread evenly over the samples.
  *
  * The reach is the split-conformal quantile of that distance over other samples of the same data, `k = ⌈(n + 1)(1 − α)⌉`-th
- * smallest, α = 0.01: a state drawn like the data falls beyond it with probability ≤ α (V. Vovk, A. Gammerman, G. Shafer,
- * Algorithmic Learning in a Random World, 2005). With too few samples for that the reach is infinite and the box alone decides.
+ * smallest, α = 0.01: were the samples independent, a new one would fall beyond it with probability ≤ α (V. Vovk,
+ * A. Gammerman, G. Shafer, Algorithmic Learning in a Random World, 2005); along trajectories that holds roughly. With too
+ * few samples for it the reach is infinite and the box alone decides.
  * Cost: 1600 · 800 · nx once, 800 · nx a question.
  */
 export function describeRegion(dataset: Dataset, role: Role = 'fit'): DataRegion {
