@@ -35,13 +35,15 @@ export function fieldProblems(exported: unknown): PlantProblem[] {
   checkChannels(exported.inputs, 'inputs', report);
   checkChannels(exported.outputs, 'outputs', report);
   checkRates(exported.inputs, report);
-  checkReadouts(exported.outputs, exported.states, report);
+  // What is read against a list is checked only when the list itself is right: one fault, one message.
+  const sound = (list: string) => !problems.some(({ key }) => key.startsWith(list));
+  if (sound('states')) checkReadouts(exported.outputs, exported.states, report);
   checkParameters(exported.parameters, report);
   if (typeof exported.derivative !== 'function') {
     report('derivative', 'a function (x, u, p) → ẋ', exported.derivative, 'write the equations of the plant');
   }
   checkPhysics(exported.physics, report);
-  checkOperatingPoint(exported, report);
+  checkOperatingPoint(exported, sound, report);
   checkHazards(exported.hazards, report);
   return problems;
 }
@@ -145,17 +147,18 @@ function checkPhysics(value: unknown, report: Report): void {
   }
 }
 
-function checkOperatingPoint(plant: Fields, report: Report): void {
+function checkOperatingPoint(plant: Fields, sound: (list: string) => boolean, report: Report): void {
   const { operatingPoint } = plant;
   if (!isFields(operatingPoint)) {
     report('operatingPoint', 'a state and an input', operatingPoint, 'write { x: […], u: […] }');
     return;
   }
   for (const [key, list] of [
-    ['x', plant.states],
-    ['u', plant.inputs],
+    ['x', 'states'],
+    ['u', 'inputs'],
   ] as const) {
-    const channels = channelsOf(list);
+    if (!sound(list)) continue;
+    const channels = channelsOf(plant[list]);
     const values = operatingPoint[key];
     const at = `operatingPoint.${key}`;
     const must = `${channels.length} number${channels.length === 1 ? '' : 's'}`;
