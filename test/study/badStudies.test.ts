@@ -5,6 +5,7 @@ import { bind, EXAMPLE, edit } from './exampleStudy.ts';
 const FAMILY_NAMES = Object.values(FAMILIES)
   .map(({ name }) => name)
   .join(', ');
+const MOST_DEGREE = FAMILIES.monomials.settings.find(({ key }) => key === 'degree')?.max;
 const STEPS = 'shape: steps, values: [5 mm, -5 mm], hold: 0.5 s';
 const WITHOUT_SCENARIO = /scenario:[\s\S]*(?=accept:)/;
 
@@ -259,7 +260,7 @@ const CASES: readonly (readonly [what: string, text: string, line: string])[] = 
   [
     'a setting outside its range',
     edit('degree: 3', 'degree: -3'),
-    '13: lifting.parts[1].degree: must be an integer from 1 to 8, got -3; write a whole number in that range, without a unit',
+    `13: lifting.parts[1].degree: must be an integer from 1 to ${MOST_DEGREE}, got -3; write a whole number in that range, without a unit`,
   ],
   [
     'a part without a family',
