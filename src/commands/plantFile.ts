@@ -13,7 +13,7 @@ import { writeWhole } from './writeWhole.ts';
 /** A plant from a file, and what identifies it. */
 export interface LoadedPlant {
   readonly plant: Plant;
-  /** SHA-256, hexadecimal, of the bundled code without comments: the same wherever the file lies. */
+  /** SHA-256, hexadecimal, of the bundled code without comments: the same in whatever folder the file lies. */
   readonly hash: string;
   /** URL of the compiled module, for workers. */
   readonly module: string;
