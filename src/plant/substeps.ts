@@ -22,46 +22,47 @@ export interface SubstepChoice {
  * sub-steps agree, from 100 states and inputs drawn over their ranges, to `SUBSTEP_TOLERANCE` of the state ranges.
  *
  * A stiff or non-smooth plant may not come so far: the count then stops at `SUBSTEP_CAP` and `error` says what was
- * reached. A start from which even the finer integration diverges is a property of the plant and is left out; if all
- * are of that kind, `error` is Infinity.
+ * reached. Starts from which even twice the cap diverges are a property of the plant and are left out; if all are of that
+ * kind, `error` is Infinity.
  */
 export function chooseSubsteps(plant: Plant, sampleTime: number, random: Random): SubstepChoice {
   const p = nominalParameters(plant);
   const nx = plant.states.length;
+  const endOf = ({ x, u }: Start, substeps: number) => {
+    const end = new Float64Array(nx);
+    return integrateSample(plant, p, x, u, sampleTime, substeps, end) === 'finished' ? end : null;
+  };
   const starts = Array.from({ length: DRAWS }, () => ({
     x: drawWithin(plant.states, 1, random),
     u: drawWithin(plant.inputs, 1, random),
-  }));
-  const endsWith = (substeps: number) =>
-    starts.map(({ x, u }) => {
-      const end = new Float64Array(nx);
-      return integrateSample(plant, p, x, u, sampleTime, substeps, end) === 'finished' ? end : null;
-    });
+  })).filter((start) => endOf(start, 2 * SUBSTEP_CAP));
+  if (starts.length === 0) return { count: SUBSTEP_CAP, error: Number.POSITIVE_INFINITY };
 
-  let coarse = endsWith(1);
+  let coarse = starts.map((start) => endOf(start, 1));
   for (let count = 1; ; count *= 2) {
-    const fine = endsWith(2 * count);
+    const fine = starts.map((start) => endOf(start, 2 * count));
     const error = largestDifference(plant, coarse, fine);
     if (error <= SUBSTEP_TOLERANCE || count >= SUBSTEP_CAP) return { count, error };
     coarse = fine;
   }
 }
 
-function largestDifference(
-  plant: Plant,
-  coarse: readonly (Float64Array | null)[],
-  fine: readonly (Float64Array | null)[],
-): number {
+interface Start {
+  readonly x: Float64Array;
+  readonly u: Float64Array;
+}
+
+type Ends = readonly (Float64Array | null)[];
+
+/** The largest difference of any state relative to its range; Infinity when one of the ends diverged. */
+function largestDifference(plant: Plant, coarse: Ends, fine: Ends): number {
   let worst = 0;
-  let compared = 0;
-  for (const [k, b] of fine.entries()) {
-    if (!b) continue;
-    const a = coarse[k];
-    if (!a) return Number.POSITIVE_INFINITY;
-    compared++;
+  for (const [k, a] of coarse.entries()) {
+    const b = fine[k];
+    if (!a || !b) return Number.POSITIVE_INFINITY;
     for (const [i, state] of plant.states.entries()) {
       worst = Math.max(worst, Math.abs(a[i] - b[i]) / (state.max - state.min));
     }
   }
-  return compared > 0 ? worst : Number.POSITIVE_INFINITY;
+  return worst;
 }

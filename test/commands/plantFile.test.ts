@@ -1,10 +1,12 @@
 import { mkdirSync, mkdtempSync, readdirSync, rmSync, writeFileSync } from 'node:fs';
 import { tmpdir } from 'node:os';
 import { join } from 'node:path';
+import { pathToFileURL } from 'node:url';
+import { transform } from 'esbuild';
 import { afterAll, beforeAll, describe, expect, it } from 'vitest';
 import { InputError } from '../../src/commands/inputError.ts';
 import { loadPlant } from '../../src/commands/plantFile.ts';
-import { lineOfKey } from '../../src/commands/plantLines.ts';
+import { createLocator, lineOfKey } from '../../src/commands/plantLines.ts';
 import { nominalParameters } from '../../src/plant/plant.ts';
 
 let folder: string;
@@ -211,6 +213,30 @@ describe('a plant file that cannot be used is refused with file, line, key and t
     mkdirSync(join(folder, 'folder.ts'));
     expect(await refusal(join(folder, 'folder.ts'))).toMatch(/got a folder/);
     expect(await refusal(write('x', 'plant.py'))).toMatch(/must be a module ending in \.ts, .*got \.py/);
+  });
+});
+
+describe('the place of an error', () => {
+  it('is read from the source map when the stack is that of the compiled file, and from the stack when it is translated', async () => {
+    const { code, map } = await transform('\n\nexport function f() {\n  throw new Error();\n}\n', {
+      sourcefile: 'user.ts',
+      sourcemap: true,
+      minifyWhitespace: true,
+    });
+    const target = join(folder, 'compiled.mjs');
+    const locate = createLocator(target, map);
+    const raised = (stack: string) => Object.assign(new Error('x'), { stack });
+    const column = code.indexOf('throw') + 1;
+    expect(code.indexOf('\n')).toBeGreaterThan(column);
+    const user = join(folder, 'user.ts');
+    const other = 'Error: x\n    at node:internal/x:3:4\n    at g (/another/file.js:7:7)\n';
+    for (const url of [target, pathToFileURL(target).href]) {
+      expect(locate(raised(`${other}    at f (${url}:1:${column})`))).toEqual({ file: user, line: 4 });
+      expect(locate(raised(`${other}    at ${url}:1:${column}`))).toEqual({ file: user, line: 4 });
+    }
+    expect(locate(raised(`${other}    at f (${user}:4:9)`))).toEqual({ file: user, line: 4 });
+    expect(locate(raised(other))).toBeNull();
+    expect(locate('a text')).toBeNull();
   });
 });
 

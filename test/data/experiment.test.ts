@@ -82,6 +82,7 @@ describe('an experiment', () => {
     expect(runExperiment(snapThrough, SETTINGS, OPTIONS)).toEqual(dataset);
     const other = runExperiment(snapThrough, SETTINGS, { ...OPTIONS, seed: 2 });
     expect(other.trajectories[0].x).not.toEqual(dataset.trajectories[0].x);
+    expect(new Set(dataset.trajectories.map(({ x }) => x[0])).size).toBe(dataset.trajectories.length);
     const fewer = runExperiment(snapThrough, { ...SETTINGS, trajectories: 5 }, OPTIONS);
     for (const [i, { x, u }] of fewer.trajectories.entries()) {
       expect(x).toEqual(dataset.trajectories[i].x);

@@ -57,6 +57,16 @@ describe('the measure of excitation', () => {
     expect(condition(sines(EXCITATION_LAGS / 2))).toBeLessThan(1e6);
   });
 
+  it('does not depend on the level about which the input moves, relation', () => {
+    const random = createRandom(2);
+    const u = Array.from({ length: 500 }, () => 0.1 * random());
+    const [low, high] = [0, 0.8].map(
+      (level) => measureExcitation(datasetOf([resting(u.map((value) => value + level))])).lagCondition,
+    );
+    expect(low).toBeLessThan(2);
+    expect(Math.abs(high / low - 1)).toBeLessThan(1e-9);
+  });
+
   it('finds a held input less rich than one that changes at each sample', () => {
     const random = createRandom(1);
     const fast = Array.from({ length: 2000 }, () => 2 * random() - 1);

@@ -180,6 +180,12 @@ const FAULTS: readonly (readonly [string, (plant: Faulty) => unknown, string, Re
     /changed arguments/,
   ],
   [
+    'a physics function that changes the state',
+    (plant) => ({ ...plant, physics: [{ name: 'root', of: (x: number[]) => x.fill(0)[0] }] }),
+    'physics.root.of',
+    /changed arguments/,
+  ],
+  [
     'a throw',
     (plant) => ({
       ...plant,

@@ -114,6 +114,12 @@ describe('the choice of sub-steps', () => {
     expect(all.error).toBe(Number.POSITIVE_INFINITY);
   });
 
+  it('takes more where the coarse integration diverges and the finer one does not', () => {
+    // Above 0.9 a pull of 60 /s that ends at 0.9; below 0 the model does not hold. Two steps of 25 ms overshoot into that.
+    const cliff = scalarPlant((x) => (x < 0 ? Number.NaN : x > 0.9 ? -60 * x : 0));
+    expect(chooseSubsteps(cliff, 0.05, createRandom(1)).count).toBeGreaterThan(2);
+  });
+
   it('is the same for the same seed', () => {
     expect(chooseSubsteps(lag, 0.3, createRandom(9))).toEqual(chooseSubsteps(lag, 0.3, createRandom(9)));
   });
