@@ -16,7 +16,10 @@ export interface LiftingPart {
   readonly constants: Readonly<Record<string, PartConstant>>;
 }
 
-/** A function left out because another one has the same values on the data. */
+/**
+ * A function left out because another one has the same values on the data, up to scale and offset; one that does not
+ * vary on the data is the same as the constant, `1`.
+ */
 export interface DroppedFunction {
   readonly name: string;
   readonly sameAs: string;
@@ -37,11 +40,18 @@ export interface Lifting {
   readonly constantIndex: number;
 }
 
-/** A function of the physical coordinates with the affine map of its value to about [−1, 1]. */
+/** A function of the physical coordinates. */
 export interface PhysicsTerm {
   readonly name: string;
   /** Value in physical units at a physical state. */
   readonly of: (x: ArrayLike<number>) => number;
+}
+
+/** An output that is a function of the state: it becomes a lifting function, so that a selection reads it out too. */
+export interface OutputTerm extends PhysicsTerm {
+  /** Its declared range, by which its value is scaled. */
+  readonly min: number;
+  readonly max: number;
 }
 
 /** What a family needs to turn its settings into a part. */
@@ -54,11 +64,13 @@ export interface LiftingContext {
   readonly centre: readonly number[];
   readonly half: readonly number[];
   readonly physics: readonly PhysicsTerm[];
+  /** Outputs that are functions of the state; empty where all are coordinates. */
+  readonly outputs: readonly OutputTerm[];
   readonly random: Random;
 }
 
-/** What evaluating a part may need besides its constants: the maps to physical units and the physics terms. */
-export type EvaluationContext = Pick<LiftingContext, 'nx' | 'centre' | 'half' | 'physics'>;
+/** What evaluating a part may need besides its constants: the maps to physical units and the plant's functions. */
+export type EvaluationContext = Pick<LiftingContext, 'nx' | 'centre' | 'half' | 'physics' | 'outputs'>;
 
 /** One setting of a family, from which the study file's table, its defaults and its documentation are made. */
 export interface FamilySetting {
