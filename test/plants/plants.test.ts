@@ -164,7 +164,7 @@ describe('motor', () => {
     expect(Math.abs(coarse[1] - 34.39163545)).toBeLessThan(1e-8);
   });
 
-  it('has the recomputed eigenvalues of its linear part at zero field: −R/L and −B/J, closed form', () => {
+  it('has at zero field the eigenvalues −R/L and −B/J, closed form', () => {
     const [slow, fast] = eigenvalues(motor, [0, 0], [0]);
     expectNear(slow.re, -0.00732 / 0.00441, 1e-8);
     expectNear(fast.re, -12.345 / 0.314, 1e-8);
