@@ -14,7 +14,7 @@ export interface LoopRecord {
   /** (steps + 1) × nx and (steps + 1) × ny: true state and output at the samples. */
   readonly x: Float64Array;
   readonly y: Float64Array;
-  /** steps × ny: reference at sample k. */
+  /** (steps + 1) × ny: reference at sample k. */
   readonly reference: Float64Array;
   /** steps × nu: what the controller sent, and what reached the plant (delayed, disturbed, saturated). */
   readonly u: Float64Array;

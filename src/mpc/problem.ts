@@ -105,5 +105,7 @@ export interface ControllerDesign {
     readonly clippedModes: number;
     /** Residual of the Riccati equation relative to ‖P‖; 0 without terminal weight. */
     readonly riccatiResidual: number;
+    /** False when the terminal weight was asked for and left out, because its equation has no stabilising solution. */
+    readonly riccatiConverged: boolean;
   };
 }
