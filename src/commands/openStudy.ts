@@ -21,6 +21,8 @@ export interface VerbOptions {
 export interface OpenStudy extends StageFolder {
   readonly study: Study;
   readonly plant: Plant;
+  /** The line of a key of the study file, or of the nearest key above it. */
+  readonly lineOf: (key: string) => number;
   readonly progress: Progress;
 }
 
@@ -53,6 +55,7 @@ export async function openStudy(name: string, options: VerbOptions): Promise<Ope
     plantHash,
     folder,
     studyName: name,
+    lineOf: draft.lineOf,
     progress: createProgress(options.quiet !== true),
   };
 }

@@ -1,3 +1,4 @@
+import { durationOf } from '../loop/reference.ts';
 import type { ReferenceSettings } from '../loop/scenario.ts';
 import type { InputChannel, Plant } from '../plant/plant.ts';
 import type { StudyOrigin } from './bindStudy.ts';
@@ -137,15 +138,9 @@ function toController(
 /** Seconds until the references of the busiest output have run their course; a sine is given two periods. */
 function longestOf(references: readonly ReferenceSettings[]): number {
   const perOutput = new Map<string, number>();
-  for (const { output, shape, values, time, times } of references) {
-    const takes = {
-      constant: 0,
-      steps: values.length * time,
-      sine: 2 * time,
-      ramp: 2 * time,
-      points: times.at(-1),
-    };
-    perOutput.set(output, (perOutput.get(output) ?? 0) + (takes[shape] ?? 0));
+  for (const reference of references) {
+    const { output } = reference;
+    perOutput.set(output, (perOutput.get(output) ?? 0) + durationOf(reference));
   }
   return Math.max(...perOutput.values());
 }

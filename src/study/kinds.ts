@@ -70,7 +70,6 @@ export function describeRange({ min, max, above, below }: Range): string {
 /** NaN and infinities are in no range. */
 export function inRange(value: number, { min, max, above, below }: Range): boolean {
   return (
-    Number.isFinite(value) &&
     value >= (min ?? -Number.MAX_VALUE) &&
     value <= (max ?? Number.MAX_VALUE) &&
     (above === undefined || value > above) &&

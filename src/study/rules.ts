@@ -152,6 +152,12 @@ function checkReferences(
   { scenario, sampleTime }: Partial<StudyValues>,
   refuse: (spot: Spot, below: string, fault: Fault) => void,
 ): void {
+  for (const entries of scenario?.references?.values() ?? []) {
+    const endless = entries.slice(0, -1).find(({ name }) => name === 'constant');
+    if (!endless) continue;
+    const wayOut = 'put it last, or write steps with one value and a hold';
+    refuse(endless.spot, 'shape', { must: 'one that ends, where another follows', got: 'constant', wayOut });
+  }
   for (const entry of [...(scenario?.references?.values() ?? [])].flat()) {
     const tooShort = (time: number, least: number) =>
       sampleTime !== undefined && !(samples(time, sampleTime) >= least);

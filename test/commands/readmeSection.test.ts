@@ -16,13 +16,10 @@ describe('the study file reference in the README', () => {
     expect(renewSection(renewed)).toBe(renewed);
   });
 
-  it.each([
-    'no markers',
-    BEGIN,
-    END,
-    `${END}${BEGIN}`,
-    `${BEGIN}${BEGIN}${END}`,
-  ])('refuses a README without the two markers in order: %j', (readme) => {
-    expect(() => renewSection(readme)).toThrow(RangeError);
-  });
+  it.each(['no markers', BEGIN, END, `${END}${BEGIN}`, `${BEGIN}${BEGIN}${END}`])(
+    'refuses a README without the two markers in order: %j',
+    (readme) => {
+      expect(() => renewSection(readme)).toThrow(RangeError);
+    },
+  );
 });

@@ -398,6 +398,11 @@ const CASES: readonly (readonly [what: string, text: string, line: string])[] = 
     '25: scenario.references.position.period: must be a time of at least 2 samples (0.004 s), got 0.003 s; lengthen it or shorten the sample time',
   ],
   [
+    'a constant reference that another one is to follow',
+    edit(`{ ${STEPS} }`, `[{ shape: constant, value: 0 }, { ${STEPS} }]`),
+    '25: scenario.references.position[1].shape: must be one that ends, where another follows, got constant; put it last, or write steps with one value and a hold',
+  ],
+  [
     'points that go back in time',
     edit(STEPS, 'shape: points, times: [0, 2, 1], values: [0, 1 mm, 0]'),
     '25: scenario.references.position.times: must be ascending, got 1 s after 2 s; put the points in order of time',
