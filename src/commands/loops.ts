@@ -87,19 +87,9 @@ export function judge(
   );
   const offsets = tracked.map((row) => Math.abs(row.offset ?? 0) / rangeOf(row.output));
   const rows: readonly (readonly [name: string, limit: number | null, reached: number, unit: string])[] = [
-    [
-      'worst excess over a limit, of its range',
-      worstExcess,
-      worst(report.limits.map((row) => row.worstOfRange)),
-      '1',
-    ],
-    ['offset left, of the range', offset, worst(offsets), '1'],
-    [
-      'tracking error rms, of the range',
-      trackingRms,
-      worst(tracked.map((row) => row.rms / rangeOf(row.output))),
-      '1',
-    ],
+    ['worst excess over a limit', worstExcess, worst(report.limits.map((row) => row.worstOfRange)), '1'],
+    ['offset left', offset, worst(offsets), '1'],
+    ['rms tracking error', trackingRms, worst(tracked.map((row) => row.rms / rangeOf(row.output))), '1'],
     ['settling time', settling, worst(settlings), 's'],
   ];
   return rows.flatMap(([name, limit, reached, unit]) => {

@@ -1,5 +1,5 @@
 import type { Caution, Severity } from '../findings/caution.ts';
-import type { LoopRun, StudyResult } from '../findings/studyResult.ts';
+import type { AcceptanceRow, LoopRun, StudyResult } from '../findings/studyResult.ts';
 import type { LimitReport, TrackingReport } from '../loop/record.ts';
 
 /** The terminal that the summary must fit. */
@@ -163,9 +163,9 @@ function describeSolves({ record, report }: LoopRun): string {
   return `${report.notOptimal} of ${record.steps} not optimal; iterations median ${median}, 95 % ${q95}, worst ${worst}`;
 }
 
-function describeAcceptance(row: StudyResult['acceptance'][number]): string {
-  const verdict = row.met ? 'met' : 'MISSED';
-  return `${row.name}: ${withUnit(row.reached, row.unit)} of ${withUnit(row.limit, row.unit)} allowed, ${verdict}`;
+function describeAcceptance({ name, limit, reached, unit, met }: AcceptanceRow): string {
+  const show = (value: number) => (unit === '1' ? percent(value) : withUnit(value, unit));
+  return `${met ? 'met' : 'MISSED'}: ${name} ${show(reached)}, allowed ${show(limit)}`;
 }
 
 function describeCautions(cautions: readonly Caution[], rows: number): string[] {

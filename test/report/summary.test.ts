@@ -74,7 +74,7 @@ describe('the closing summary', () => {
     expect(text).toContain('37  plain linear regression, 3 times');
     expect(text).toContain('247  linearised at the operating point, 20 times');
     expect(text).toContain('2 of 500 not optimal; iterations median 2, 95 % 5, worst 11');
-    expect(text).toContain('worst excess: 0.0355 of 0.05 allowed, met');
+    expect(text).toContain('met: worst excess 3.55 %, allowed 5 %');
     expect(text).toContain('0 errors, 1 warning, 1 note');
     expect(text).toContain('out/snap-through: report.html');
     expect(text).toContain('Keep independent limits');
@@ -95,7 +95,7 @@ describe('the closing summary', () => {
     expect(text).toContain('does NOT help: error 1.02');
     expect(text).toContain('not even one step within 10 %');
     expect(text).toContain('DIVERGED');
-    expect(text).toContain('MISSED');
+    expect(text).toContain('MISSED: offset 20 %, allowed 1 %');
   });
 
   it('fits 24 rows of 80 columns with a row left for the prompt, whatever there is to tell', () => {
