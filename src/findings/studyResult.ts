@@ -1,5 +1,6 @@
 import type { Dataset } from '../data/dataset.ts';
 import type { LoopRecord, LoopReport } from '../loop/record.ts';
+import type { ScenarioSettings } from '../loop/scenario.ts';
 import type { ControllerDesign } from '../mpc/problem.ts';
 import type { Plant } from '../plant/plant.ts';
 import type { Predictor } from '../predictor/predictor.ts';
@@ -38,6 +39,8 @@ export interface StudyResult {
   readonly trust: TrustCurve;
   readonly spectrum: Spectrum;
   readonly design: ControllerDesign;
+  /** What the runs went through. */
+  readonly scenario: ScenarioSettings;
   /** The lifted run first. */
   readonly runs: readonly LoopRun[];
   readonly acceptance: readonly AcceptanceRow[];
