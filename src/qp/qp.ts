@@ -57,6 +57,8 @@ export interface QpResult {
 export interface QpSolver {
   readonly n: number;
   readonly m: number;
+  /** 2-norm condition number of H. */
+  readonly condition: number;
   /**
    * @param q n entries. @param lower, upper m entries, ±Infinity where there is no bound; none is modified.
    * Never throws for a numerical outcome. The working set of the last solve is the warm start.
