@@ -2,13 +2,15 @@ import { describeRegion, outsideRegion } from '../data/region.ts';
 import type { AcceptanceRow, LoopRun } from '../findings/studyResult.ts';
 import { assessLoop } from '../loop/assess.ts';
 import { simulateLoop } from '../loop/simulate.ts';
+import type { Controller } from '../mpc/controller.ts';
 import { createController } from '../mpc/online.ts';
 import type { ControllerDesign } from '../mpc/problem.ts';
 import type { Predictor } from '../predictor/predictor.ts';
 import { createExactSolver } from '../qp/exact.ts';
 import type { Study } from '../study/study.ts';
+import { NumericalStop } from './numericalStop.ts';
 import type { OpenStudy } from './openStudy.ts';
-import { bindPredictor, designFor, liftedCoordinates } from './pipeline.ts';
+import { bindPredictor, designFor, liftedCoordinates, stopping } from './pipeline.ts';
 import type { StageContents } from './stageFiles.ts';
 
 /** The loops' records, and how long each decision of each of them took, which belongs in no record. */
@@ -31,21 +33,13 @@ export function makeLoops(
 ): Loops {
   const { study, plant } = open;
   const region = describeRegion(liftedCoordinates(open, dataset));
-  const planned: [LoopRun['name'], ControllerDesign][] = [['lifted', design]];
-  if (canTrack(fitted.plainLinear, study)) {
-    planned.push(['plain-linear', designFor(open, fitted.plainLinear)]);
-  }
-  if (fitted.linearised && canTrack(fitted.linearised, study)) {
-    planned.push(['linearised', designFor(open, fitted.linearised)]);
-  }
+  const planned = [prepare(open, 'lifted', design), ...prepareRivals(open, fitted)];
   const solveTimes = new Map<string, readonly number[]>();
-  const runs = planned.map(([name, own], i): LoopRun => {
-    const { predictor } = own.problem;
-    const solver = createExactSolver(own.qp);
+  const runs = planned.map(({ name, predictor, controller }, i): LoopRun => {
     const outcome = simulateLoop({
       name,
       plant,
-      controller: createController(own, bindPredictor(open, predictor), solver, plant.operatingPoint.u),
+      controller,
       outputsSeen: predictor.outputs.map((output) => output.name),
       problem: design.problem,
       scenario: study.scenario,
@@ -60,6 +54,42 @@ export function makeLoops(
     return { name, record: outcome.record, report: assessLoop(outcome.record, design.problem, plant) };
   });
   return { contents: { runs, acceptance: judge(open, runs[0]) }, solveTimes };
+}
+
+interface PreparedLoop {
+  readonly name: LoopRun['name'];
+  readonly predictor: Predictor;
+  readonly controller: Controller;
+}
+
+/** @throws NumericalStop when the quadratic program is not strictly convex. */
+function prepare(open: OpenStudy, name: LoopRun['name'], design: ControllerDesign): PreparedLoop {
+  const { predictor } = design.problem;
+  const solver = stopping(open, () => createExactSolver(design.qp));
+  const controller = createController(
+    design,
+    bindPredictor(open, predictor),
+    solver,
+    open.plant.operatingPoint.u,
+  );
+  return { name, predictor, controller };
+}
+
+/** The rivals that read out what the study tracks and whose predictors make a controller at all; the others are left out. */
+function prepareRivals(open: OpenStudy, { plainLinear, linearised }: StageContents['fit']): PreparedLoop[] {
+  const rivals: readonly (readonly [LoopRun['name'], Predictor | null])[] = [
+    ['plain-linear', plainLinear],
+    ['linearised', linearised],
+  ];
+  return rivals.flatMap(([name, predictor]) => {
+    if (!predictor || !canTrack(predictor, open.study)) return [];
+    try {
+      return [prepare(open, name, designFor(open, predictor))];
+    } catch (error) {
+      if (error instanceof NumericalStop) return [];
+      throw error;
+    }
+  });
 }
 
 /** Can a controller on this predictor track everything that the study tracks? */

@@ -20,6 +20,7 @@ import type { Predictor } from '../predictor/predictor.ts';
 import { fitPlainLinear, linearisePredictor } from '../predictor/rivals.ts';
 import { computeSpectrum } from '../predictor/spectrum.ts';
 import { UnusableDataError } from '../predictor/unusableData.ts';
+import { NotConvexError } from '../qp/notConvex.ts';
 import { InputError } from './inputError.ts';
 import { NumericalStop } from './numericalStop.ts';
 import type { OpenStudy } from './openStudy.ts';
@@ -158,11 +159,12 @@ export function makeDesign(open: OpenStudy, { predictor }: StageContents['fit'])
 }
 
 /** Runs a part of the job; what the stages throw about the user's data or lifting becomes a message or a stop. */
-function stopping<T>({ studyName, lineOf }: OpenStudy, part: () => T): T {
+export function stopping<T>({ studyName, lineOf }: OpenStudy, part: () => T): T {
   try {
     return part();
   } catch (error) {
     if (error instanceof UnusableDataError) throw new NumericalStop(error.message);
+    if (error instanceof NotConvexError) throw new NumericalStop(`controller: ${error.message}`);
     if (error instanceof UnusableLiftingError) {
       throw new InputError({ file: studyName, line: lineOf(error.problem.key), ...error.problem });
     }

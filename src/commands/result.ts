@@ -13,6 +13,7 @@ export function makeResult({ study, plant }: OpenStudy, stages: StageContents): 
     seed: study.seed,
     plant,
     sampleTime: study.sampleTime,
+    scenario: study.scenario,
     substeps,
     dataset,
     predictor: stages.fit.predictor,

@@ -160,7 +160,7 @@ function describeCost(runs: readonly LoopRun[]): string[] {
 
 function describeSolves({ record, report }: LoopRun): string {
   const { median, q95, worst } = report.iterations;
-  return `${report.notOptimal} of ${record.steps} not optimal; iterations median ${median}, 95 % ${q95}, worst ${worst}`;
+  return `${report.notOptimal} of ${record.steps} not optimal; iterations median ${formatFigure(median)}, 95 % ${formatFigure(q95)}, worst ${worst}`;
 }
 
 function describeAcceptance({ name, limit, reached, unit, met }: AcceptanceRow): string {

@@ -157,6 +157,23 @@ describe('the command line', () => {
     expect(existsSync(join(folder, 'out/runaway/dataset.json'))).toBe(false);
   });
 
+  it('weights that leave the controller nothing to minimise stop the job with exit code 3', () => {
+    const weightless = STUDY.replace(
+      'horizon: 10',
+      'horizon: 10, inputs: { force: { moveWeight: 0 } }, outputs: { position: { trackWeight: 0 } }',
+    );
+    const { status, stderr } = liftwright('run', place('weightless', weightless));
+    expect(status).toBe(3);
+    expect(stderr).toMatch(/^liftwright: stopped: controller: .*positive definite.*\n$/);
+  });
+
+  it('a lifting that the plant cannot serve: the line of the study file, exit code 2', () => {
+    const study = place('no-physics', STUDY.replace('family: monomials, degree: 3', 'family: physics'));
+    const { status, stderr } = liftwright('run', study);
+    expect(status).toBe(2);
+    expect(stderr).toMatch(/^no-physics\/study\.yaml:4: lifting\.parts\[1\].*: must be .+, got .+; .+\n$/);
+  });
+
   it('a reader that closes the pipe early does not disturb the program', () => {
     const { status, stderr } = spawnSync(
       'bash',
