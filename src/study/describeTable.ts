@@ -80,16 +80,28 @@ export function referenceText(): string {
 
 /** The reference of the study file as Markdown tables, one a section. */
 export function referenceMarkdown(): string {
-  const cell = (text: string) => text.replaceAll('|', '\\|').replaceAll('<', '&lt;');
-  const head = ['| key | must be | default | meaning |', '| --- | --- | --- | --- |'];
-  const line = ({ path, must, otherwise, meaning }: KeyRow) =>
-    `| \`${path}\` | ${cell(must)} | ${cell(otherwise)} | ${cell(meaning)} |`;
   const rows = listKeys();
   const sections = Object.keys(TABLE).filter((key) => rows.some(({ path }) => path.startsWith(`${key}.`)));
-  const lines = [...INTRODUCTION, '', ...head, ...rows.filter(({ path }) => !path.includes('.')).map(line)];
+  const lines = [...INTRODUCTION, '', ...markdownTable(rows.filter(({ path }) => !path.includes('.')))];
   for (const section of sections) {
-    lines.push('', `**${section}**`, '', ...head);
-    lines.push(...rows.filter(({ path }) => path.startsWith(`${section}.`)).map(line));
+    const own = rows.filter(({ path }) => path.startsWith(`${section}.`));
+    lines.push('', `**${section}**`, '', ...markdownTable(own));
   }
   return `${lines.join('\n')}\n`;
+}
+
+/** A table with its columns aligned, as the formatter has it. */
+function markdownTable(rows: readonly KeyRow[]): string[] {
+  const cell = (text: string) => text.replaceAll('|', '\\|').replaceAll('<', '&lt;');
+  const cells = [
+    ['key', 'must be', 'default', 'meaning'],
+    ...rows.map(({ path, must, otherwise, meaning }) => [
+      `\`${path}\``,
+      ...[must, otherwise, meaning].map(cell),
+    ]),
+  ];
+  const widths = cells[0].map((_, i) => Math.max(3, ...cells.map((row) => row[i].length)));
+  const line = (row: readonly string[]) => `| ${row.map((text, i) => text.padEnd(widths[i])).join(' | ')} |`;
+  const [head, ...body] = cells.map(line);
+  return [head, line(widths.map((width) => '-'.repeat(width))), ...body];
 }

@@ -9,10 +9,10 @@ describe('the study file reference in the README', () => {
   });
 
   it('leaves everything outside its markers as it was', () => {
-    const renewed = renewSection(`# A\n${BEGIN}\nold\n${END}\nB\n`);
+    const renewed = renewSection(`# A\n${BEGIN}\nOUTDATED\n${END}\nB\n`);
     expect(renewed.startsWith(`# A\n${BEGIN}\n`)).toBe(true);
     expect(renewed.endsWith(`${END}\nB\n`)).toBe(true);
-    expect(renewed).not.toContain('old');
+    expect(renewed).not.toContain('OUTDATED');
     expect(renewSection(renewed)).toBe(renewed);
   });
 
