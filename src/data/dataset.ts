@@ -11,6 +11,8 @@ export interface Trajectory {
   readonly x: Float64Array;
   /** steps × nu, row-major, physical units. */
   readonly u: Float64Array;
+  /** Shape of the input signal, if it is known. */
+  readonly signal?: string;
   /** Why it is shorter than planned, if it is. */
   readonly cut?: 'diverged' | 'left-range';
 }

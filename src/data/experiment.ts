@@ -67,7 +67,7 @@ export function runExperiment(
     const trajectory = runTrajectory(plant, settings, options, shape, random);
     if (trajectory.cut === 'diverged') cuts.diverged++;
     if (trajectory.cut === 'left-range') cuts.leftRange++;
-    if (trajectory.steps >= FEWEST_STEPS) kept.push(trajectory);
+    if (trajectory.steps >= FEWEST_STEPS) kept.push({ signal: shape, ...trajectory });
     onProgress?.(i + 1, settings.trajectories);
   }
   const random = createRandom(deriveSeed(seed, 'split'));
