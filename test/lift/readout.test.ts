@@ -21,6 +21,10 @@ const outputs: readonly OutputChannel[] = [
   { name: 'rate', unit: 'rad/s', min: -200, max: 100, of: (x) => x[1] },
   // The state in another unit and over another range: a function of its own, read out by selection all the same.
   { name: 'degrees', unit: 'deg', min: 0, max: 90, of: (x) => (x[0] * 180) / Math.PI },
+  // Proportional to the scaled state, 0.75 times, yet not equal to it.
+  { name: 'part-rate', unit: 'rad/s', min: -250, max: 150, of: (x) => x[1] },
+  // It does not vary within the ranges.
+  { name: 'end-stop', unit: '1', min: 0, max: 1, of: (x) => (x[0] > 5 ? 1 : 0) },
   // A name that a state has too.
   { name: 'speed', unit: 'rad/s', min: 0, max: 200, of: (x) => Math.abs(x[1]) },
 ];
@@ -92,12 +96,14 @@ describe('a selection of the lifted state', () => {
     const { x } = makeScaling(dataset, plant, 'state');
     const context = createLiftingContext({ dataset, plant, read: 'state', scaling: x, random });
     const lifting = buildLifting({ constant: true, parts }, context);
-    expect(lifting.names.slice(0, 7)).toEqual([
+    expect(lifting.names.slice(0, 9)).toEqual([
       'angle',
       'speed',
       '1',
       'energy',
       'degrees',
+      'part-rate',
+      'end-stop',
       'speed (output)',
       'weight',
     ]);
@@ -123,7 +129,7 @@ describe('a selection of the lifted state', () => {
     expect(lifting.names.slice(0, lifting.nx)).toEqual(
       listCoordinates(plant, settings).map(({ name }) => name),
     );
-    expect(scaling.y.half).toEqual(scaling.x.half.slice(0, 5));
+    expect(scaling.y.half).toEqual(scaling.x.half.slice(0, plant.outputs.length));
   });
 
   it('is refused as a fault where the lifting was built without the output', () => {
