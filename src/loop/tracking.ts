@@ -16,7 +16,10 @@ interface Stretch {
   readonly step: number;
 }
 
-/** Tracking figures of each output that the problem tracks. */
+/**
+ * Tracking figures of each output that the problem tracks. A controller that sees the reference ahead leaves a value before
+ * the next step is due: overshoot, settling and offset are read before the next step comes into its sight.
+ */
 export function reportTracking(record: LoopRecord, problem: ControlProblem, plant: Plant): TrackingReport[] {
   const { ny, steps, sampleTime } = record;
   const { Q, predictor } = problem;
@@ -26,7 +29,7 @@ export function reportTracking(record: LoopRecord, problem: ControlProblem, plan
     const y = column(record.y, steps + 1, ny, at);
     const r = column(record.reference, steps + 1, ny, at);
     const errors = y.map((value, k) => value - r[k]);
-    const stretches = findStretches(r);
+    const stretches = findStretches(r, problem.preview ? problem.horizon + problem.delay : 0);
     const stepped = stretches.filter(({ step }) => step !== 0);
     const times = stepped.map((stretch) => settlingSamples(errors, stretch));
     const settledTimes = times.filter((time) => time !== null);
@@ -47,13 +50,15 @@ export function reportTracking(record: LoopRecord, problem: ControlProblem, plan
   });
 }
 
-function findStretches(r: Float64Array): Stretch[] {
+/** @param sight samples at the end of a stretch from which the next value can be seen. */
+function findStretches(r: Float64Array, sight: number): Stretch[] {
   const stretches: Stretch[] = [];
   let from = 0;
   for (let k = 1; k <= r.length; k++) {
     if (k < r.length && r[k] === r[k - 1]) continue;
     const step = from > 0 ? r[from] - r[from - 1] : 0;
-    if (k - from >= FEWEST_SAMPLES) stretches.push({ from, to: k, step });
+    const to = k < r.length ? k - sight : k;
+    if (to - from >= FEWEST_SAMPLES) stretches.push({ from, to, step });
     from = k;
   }
   return stretches;
