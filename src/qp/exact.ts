@@ -1,304 +1,354 @@
-import { decomposeSymmetric } from '../numerics/eigen.ts';
-import { createKernels } from '../numerics/kernels/wasm.ts';
-import { NotConvexError } from './notConvex.ts';
-import type { QpResult, QpSolver, QpStructure } from './qp.ts';
-import { createResidualCheck } from './residuals.ts';
+import { findCertificate } from './certificate.ts';
+import { createIterate, type Iterate, measure, refine, updatePrimal } from './iterate.ts';
+import { prepareQp } from './prepare.ts';
+import { allFinite, dot, multiplyRows } from './products.ts';
+import type { QpResult, QpSolver, QpStatus, QpStructure } from './qp.ts';
+import { WorkingFactor } from './workingFactor.ts';
 
-/** A row is violated when it is by more than this, relative to the size of its own terms. */
-const FEASIBLE = 1e-12;
-/** A row whose pivot falls below this share of its own diagonal depends on the working set. */
-const DEPENDENT = 1e-11;
+/** Settings of the exact solver. */
+export interface ExactSettings {
+  /** Rounds of the working set after which a solve gives up; by default 10 (m + n) + 100. */
+  readonly iterationLimit?: number;
+}
+
+/** A solve is called optimal when every condition holds to this, relative to the size of its own terms. */
+const ACCEPTED = 1e-10;
+/** Residuals above this are refined before a solve ends. */
+const POLISHED = 2e-13;
+/** A row counts as violated beyond this share of the size of its terms. */
+const FEASIBLE = 1e-13;
+/** Violated rows above this share of the worst join the working set together. */
+const BLOCK_SHARE = 0.1;
+/** Least pivot with which a row joins in a block. */
+const BLOCK_PIVOT = 1e-7;
+/** Below this pivot a row counts as dependent on the working set until the certificate says otherwise. */
+const DEPENDENT = 1e-9;
+/** A dependent row violated by less than this share of its terms is consistent to within rounding. */
+const CONSISTENT = 1e-9;
+/** Rates of multipliers below this share of the largest are rounding. */
+const LEAST_RATE = 1e-11;
 
 /**
- * Dual active-set method for strictly convex QPs. Source: D. Goldfarb, A. Idnani, Math. Prog. 27:1–33, 1983; warm start and
- * dual form after D. Arnström, A. Bemporad, D. Axehill, IEEE Trans. AC 67:4362–4369, 2022.
+ * A solver that ends at the optimum itself: dual active set (D. Goldfarb, A. Idnani, "A numerically stable dual method for
+ * solving strictly convex quadratic programs", Math. Prog. 27:1–33, 1983), on the dual matrix with an LDLᵀ factor of
+ * the working set (D. Arnström, A. Bemporad, D. Axehill, "A dual active-set solver for embedded quadratic
+ * programming using recursive LDLᵀ updates", IEEE TAC 67:4362–4369, 2022), with rows added in blocks.
+ *
+ * @throws UnusableQpError when the structure is not strictly convex or its shapes disagree.
  */
-export function createExactSolver(structure: QpStructure): QpSolver {
-  const { H, G, softness } = structure;
-  const n = H.rows;
-  const m = G.rows;
-  const k = createKernels(2 * m * m + 2 * n * n + 2 * m * n + 24 * (m + n) + 4096);
-  const L = k.allocate(n * n);
-  L.set(H.data);
-  if (k.factorCholesky(L, n) < n) {
-    throw new NotConvexError(decomposeSymmetric(H).values[0]);
-  }
-  const { values } = decomposeSymmetric(H);
-  const Gm = k.allocate(m * n);
-  Gm.set(G.data);
-  // T = L⁻¹ Gᵀ, then D = Tᵀ T + diag(softness): the dual Hessian.
-  const T = k.allocate(n * m);
-  for (let i = 0; i < m; i++) for (let j = 0; j < n; j++) T[j * m + i] = G.data[i * n + j];
-  k.solveLowerMany(L, n, T, m);
-  const Tt = k.allocate(m * n);
-  for (let i = 0; i < m; i++) for (let j = 0; j < n; j++) Tt[i * n + j] = T[j * m + i];
-  const D = k.allocate(m * m);
-  k.multiplyTransposedAdd(D, Tt, Tt, m, n, m);
-  for (let i = 0; i < m; i++) D[i * m + i] += softness[i];
-  const scale = Float64Array.from({ length: m }, (_, i) => 1 / Math.sqrt(D[i * m + i] || 1));
-
-  const most = Math.min(m, n + softness.reduce((count, s) => count + (s > 0 ? 1 : 0), 0));
-  const ld = most + 1;
-  const W = new Int32Array(most + 1);
-  const R = k.allocate((most + 1) * ld);
-  const y = k.allocate(most + 1);
-  const r = k.allocate(most + 1);
-  const lambda = k.allocate(most + 1);
-  const work = k.allocate(n);
-  const x0 = k.allocate(n);
-  const x = k.allocate(n);
-  const free = k.allocate(m);
-  const value = k.allocate(m);
+export function createExactSolver(structure: QpStructure, settings: ExactSettings = {}): QpSolver {
+  const qp = prepareQp(structure);
+  const { n, m } = qp;
+  const softRows = qp.softness.reduce((count, value) => count + (value > 0 ? 1 : 0), 0);
+  const factor = new WorkingFactor(qp.Q, m, Math.min(m, n + softRows));
+  const it = createIterate(qp, factor);
+  const limit = settings.iterationLimit ?? 10 * (m + n) + 100;
   const start = new Int8Array(m);
+  let startGiven = false;
   const result: QpResult = {
     status: 'failed',
-    x,
-    multipliers: k.allocate(m),
-    residuals: { stationarity: 0, primal: 0, dual: 0, complementarity: 0, relative: 0 },
+    x: it.x,
+    multipliers: it.multipliers,
+    residuals: it.residuals,
     iterations: 0,
-    workingSet: new Int8Array(m),
+    workingSet: it.side,
     certificate: new Float64Array(m),
-  };
-  const side = result.workingSet;
-  const check = createResidualCheck(structure);
-  let size = 0;
-
-  const solveH = (v: Float64Array) => {
-    k.solveLower(L, n, n, v);
-    k.solveLowerTransposed(L, n, n, v);
-  };
-
-  /** y = R⁻¹ D[W, p]; returns the pivot left of D[p, p]. */
-  const project = (p: number): number => {
-    let pivot = D[p * m + p];
-    for (let a = 0; a < size; a++) y[a] = D[W[a] * m + p];
-    k.solveLower(R, ld, size, y);
-    for (let a = 0; a < size; a++) pivot -= y[a] * y[a];
-    return pivot;
-  };
-
-  const append = (p: number, s: number, pivot: number) => {
-    R.set(y.subarray(0, size), size * ld);
-    R[size * ld + size] = Math.sqrt(pivot);
-    W[size] = p;
-    side[p] = s;
-    size++;
-  };
-
-  /** Takes the row at position `at` out of the working set; Givens rotations restore the triangle. */
-  const remove = (at: number) => {
-    side[W[at]] = 0;
-    for (let a = at; a < size - 1; a++) {
-      W[a] = W[a + 1];
-      lambda[a] = lambda[a + 1];
-      R.copyWithin(a * ld, (a + 1) * ld, (a + 1) * ld + a + 2);
-      const [u, v] = [R[a * ld + a], R[a * ld + a + 1]];
-      const h = Math.hypot(u, v);
-      const [c, s] = [u / h, v / h];
-      R[a * ld + a] = h;
-      R[a * ld + a + 1] = 0;
-      for (let b = a + 1; b < size - 1; b++) {
-        const row = (b + 1) * ld;
-        const [p, q] = [R[row + a], R[row + a + 1]];
-        R[row + a] = c * p + s * q;
-        R[row + a + 1] = c * q - s * p;
-      }
-    }
-    size--;
-  };
-
-  const bound = (p: number, lower: Float64Array, upper: Float64Array) => (side[p] > 0 ? upper[p] : lower[p]);
-
-  /** Multipliers of the working set from scratch: `D_WW λ = v_W − b_W`, refined once against the residual. */
-  const solveMultipliers = (lower: Float64Array, upper: Float64Array) => {
-    for (let a = 0; a < size; a++) lambda[a] = free[W[a]] - bound(W[a], lower, upper);
-    k.solveLower(R, ld, size, lambda);
-    k.solveLowerTransposed(R, ld, size, lambda);
-    for (let round = 0; round < 2; round++) {
-      for (let a = 0; a < size; a++) {
-        let sum = free[W[a]] - bound(W[a], lower, upper);
-        for (let b = 0; b < size; b++) sum -= D[W[a] * m + W[b]] * lambda[b];
-        r[a] = sum;
-      }
-      k.solveLower(R, ld, size, r);
-      k.solveLowerTransposed(R, ld, size, r);
-      for (let a = 0; a < size; a++) lambda[a] += r[a];
-    }
-  };
-
-  const isEquality = (p: number, lower: Float64Array, upper: Float64Array) => lower[p] === upper[p];
-
-  /** Row values `G x + e` (slack left out of hard rows): `free − D λ`. */
-  const updateValues = () => {
-    value.set(free);
-    for (let a = 0; a < size; a++) {
-      // D is symmetric: a row serves as the column.
-      const row = W[a] * m;
-      const l = lambda[a];
-      for (let i = 0; i < m; i++) value[i] -= l * D[row + i];
-    }
-  };
-
-  /** Position in the working set of a multiplier of the wrong sign, worst first; −1 if there is none. */
-  const worstSign = (lower: Float64Array, upper: Float64Array): number => {
-    let worst = -1;
-    let least = 0;
-    for (let a = 0; a < size; a++) {
-      if (isEquality(W[a], lower, upper)) continue;
-      const signed = side[W[a]] * lambda[a];
-      if (signed < least) {
-        least = signed;
-        worst = a;
-      }
-    }
-    return worst;
-  };
-
-  const finish = (
-    status: QpResult['status'],
-    q: Float64Array,
-    lower: Float64Array,
-    upper: Float64Array,
-  ): QpResult => {
-    result.status = status;
-    result.multipliers.fill(0);
-    for (let a = 0; a < size; a++) result.multipliers[W[a]] = lambda[a];
-    k.applyTransposed(work, Gm, result.multipliers, m, n);
-    for (let j = 0; j < n; j++) x[j] = -q[j] - work[j];
-    solveH(x);
-    check(result, q, lower, upper);
-    return result;
   };
 
   const solve = (q: Float64Array, lower: Float64Array, upper: Float64Array): QpResult => {
+    if (startGiven) takeStart(it, start);
+    startGiven = false;
     result.iterations = 0;
-    result.certificate.fill(0);
-    start.set(side);
-    side.fill(0);
-    size = 0;
-    for (let j = 0; j < n; j++) x0[j] = -q[j];
-    solveH(x0);
-    k.apply(free, Gm, x0, m, n);
-    let fine = true;
-    for (let i = 0; i < m; i++)
-      fine = fine && !Number.isNaN(free[i]) && !Number.isNaN(lower[i]) && !Number.isNaN(upper[i]);
-    for (let j = 0; j < n; j++) fine = fine && Number.isFinite(x0[j]);
-    if (!fine) return finish('failed', q, lower, upper);
-    for (let i = 0; i < m; i++) {
-      if (lower[i] > upper[i]) {
-        result.certificate[i] = 1;
-        return finish('infeasible', q, lower, upper);
+    let status = begin(it, q, lower, upper);
+    if (status === null) {
+      status = run(it, false, limit, result);
+      if (status !== 'optimal' && status !== 'infeasible') {
+        factor.clear();
+        it.side.fill(0);
+        begin(it, q, lower, upper);
+        status = run(it, true, limit, result);
       }
     }
-    for (let i = 0; i < m && size < most; i++) {
-      const equal = lower[i] === upper[i];
-      const s = equal ? 1 : start[i];
-      if (s === 0 || !Number.isFinite(s > 0 ? upper[i] : lower[i])) continue;
-      const pivot = project(i);
-      if (pivot > 1e-9 * D[i * m + i]) append(i, s, pivot);
-    }
-    solveMultipliers(lower, upper);
-    for (let drops = 0; drops <= m; drops++) {
-      let dropped = false;
-      for (let a = size - 1; a >= 0; a--) {
-        if (side[W[a]] * lambda[a] < 0 && !isEquality(W[a], lower, upper)) {
-          remove(a);
-          dropped = true;
-        }
-      }
-      if (!dropped) break;
-      solveMultipliers(lower, upper);
-    }
-    const limit = 50 * (m + n) + 100;
-    for (; result.iterations < limit; result.iterations++) {
-      updateValues();
-      let p = -1;
-      let worst = 0;
-      let s = 0;
-      for (let i = 0; i < m; i++) {
-        if (side[i] !== 0) continue;
-        const tolerance = FEASIBLE * (1 + Math.abs(free[i]) + Math.abs(value[i]));
-        const above = value[i] - upper[i];
-        const below = lower[i] - value[i];
-        if (above > tolerance && above * scale[i] > worst) {
-          worst = above * scale[i];
-          p = i;
-          s = 1;
-        }
-        if (below > tolerance && below * scale[i] > worst) {
-          worst = below * scale[i];
-          p = i;
-          s = -1;
-        }
-      }
-      if (p < 0) {
-        solveMultipliers(lower, upper);
-        if (worstSign(lower, upper) >= 0) {
-          const at = worstSign(lower, upper);
-          const tiny =
-            side[W[at]] * lambda[at] > (-1e-10 * (1 + Math.abs(free[W[at]]))) / D[W[at] * m + W[at]];
-          if (!tiny) {
-            remove(at);
-            solveMultipliers(lower, upper);
-            continue;
-          }
-          lambda[at] = 0;
-        }
-        return finish('optimal', q, lower, upper);
-      }
-      if (!addRow(p, s, lower, upper)) return finish('infeasible', q, lower, upper);
-    }
-    return finish('iteration-limit', q, lower, upper);
-  };
-
-  /** Brings row p to its bound, dropping rows that block on the way; false when no step can (infeasible, certificate set). */
-  const addRow = (p: number, s: number, lower: Float64Array, upper: Float64Array): boolean => {
-    let gained = 0;
-    for (let guard = 0; guard <= m + 1; guard++) {
-      const pivot = project(p);
-      r.set(y.subarray(0, size));
-      k.solveLowerTransposed(R, ld, size, r);
-      let current = free[p] - gained * s * D[p * m + p];
-      for (let a = 0; a < size; a++) current -= lambda[a] * D[p * m + W[a]];
-      const gap = s > 0 ? current - upper[p] : lower[p] - current;
-      const independent = pivot > DEPENDENT * D[p * m + p] && size < most + 1;
-      const full = independent ? Math.max(0, gap) / pivot : Number.POSITIVE_INFINITY;
-      let partial = Number.POSITIVE_INFINITY;
-      let blocking = -1;
-      for (let a = 0; a < size; a++) {
-        if (isEquality(W[a], lower, upper)) continue;
-        const sinks = side[W[a]] * s * r[a];
-        if (!(sinks > 1e-14)) continue;
-        const t = Math.max(0, side[W[a]] * lambda[a]) / sinks;
-        if (t < partial) {
-          partial = t;
-          blocking = a;
-        }
-      }
-      const t = Math.min(full, partial);
-      if (t === Number.POSITIVE_INFINITY) {
-        if (gap <= 1e-9 * (1 + Math.abs(free[p]))) return true;
-        result.certificate[p] = s;
-        for (let a = 0; a < size; a++) result.certificate[W[a]] = -s * r[a];
-        return false;
-      }
-      for (let a = 0; a < size; a++) lambda[a] -= t * s * r[a];
-      gained += t;
-      if (full <= partial) {
-        append(p, s, pivot);
-        lambda[size - 1] = s * gained;
-        return true;
-      }
-      remove(blocking);
-    }
-    return true;
+    if (status === 'failed') factor.clear();
+    finish(it, status);
+    result.status = status;
+    return result;
   };
 
   return {
     n,
     m,
-    condition: values[n - 1] / values[0],
+    condition: qp.condition,
     solve,
-    setWorkingSet: (set) => side.set(set),
+    setWorkingSet(workingSet) {
+      start.set(workingSet);
+      startGiven = true;
+    },
   };
+}
+
+/** Brings the working set to `start` with as few changes of the factor as that takes. */
+function takeStart({ factor, side, leave }: Iterate, start: Int8Array): void {
+  for (let j = 0; j < factor.k; j++) leave[j] = start[factor.rows[j]] === 0 ? 1 : 0;
+  factor.removeMarked(leave);
+  for (let i = 0; i < side.length; i++) {
+    side[i] = start[i];
+    if (start[i] !== 0 && factor.place[i] < 0) {
+      if (!(factor.append(i, 0, BLOCK_PIVOT) >= BLOCK_PIVOT)) side[i] = 0;
+    }
+  }
+}
+
+/** Reads the data of a solve; a status when they settle it. */
+function begin(it: Iterate, q: Float64Array, lower: Float64Array, upper: Float64Array): QpStatus | null {
+  const { qp, factor, side, equal, exempt, leave } = it;
+  const { n, m } = qp;
+  it.q = q;
+  it.lower = lower;
+  it.upper = upper;
+  let crossed = false;
+  for (let i = 0; i < m; i++) {
+    const low = lower[i];
+    const high = upper[i];
+    if (!(low <= high)) {
+      if (Number.isNaN(low) || Number.isNaN(high)) return 'failed';
+      crossed = true;
+    }
+    if (low === Number.POSITIVE_INFINITY || high === Number.NEGATIVE_INFINITY) return 'failed';
+    equal[i] = low === high ? 1 : 0;
+    exempt[i] = 0;
+  }
+  multiplyRows(it.x0, qp.Hinv, n, n, qp.fullFrom, qp.fullTo, q);
+  for (let i = 0; i < n; i++) it.x0[i] = -it.x0[i];
+  if (!allFinite(it.x0)) return 'failed';
+  it.x.set(it.x0);
+  if (crossed) return 'infeasible';
+  for (let i = 0; i < m; i++) {
+    if (qp.scale[i] === 0 && !(lower[i] <= 0 && upper[i] >= 0)) return 'infeasible';
+  }
+
+  let dropped = 0;
+  for (let j = 0; j < factor.k; j++) {
+    const i = factor.rows[j];
+    leave[j] = Number.isFinite(side[i] > 0 ? upper[i] : lower[i]) ? 0 : 1;
+    if (leave[j] === 1) {
+      side[i] = 0;
+      dropped++;
+    }
+  }
+  if (dropped > 0) factor.removeMarked(leave);
+  for (let i = 0; i < m; i++) {
+    if (equal[i] === 1 && factor.place[i] < 0 && qp.scale[i] > 0) {
+      if (factor.append(i, 0, BLOCK_PIVOT) >= BLOCK_PIVOT) side[i] = 1;
+    }
+  }
+  for (let j = 0; j < factor.k; j++) {
+    const i = factor.rows[j];
+    factor.c[j] = rightSide(it, i, side[i]);
+  }
+  factor.forward(0);
+  return null;
+}
+
+/** `c = s (g x0 − bound)` of one row. */
+function rightSide({ qp, x0, lower, upper }: Iterate, row: number, side: number): number {
+  const from = qp.from[row];
+  const value = dot(qp.G, row * qp.n + from, x0, from, qp.to[row] - from);
+  return qp.scale[row] * (value - (side > 0 ? upper[row] : lower[row]));
+}
+
+/**
+ * Rounds of: multipliers on the working set; rows with a wrong sign leave; the most violated rows join. Every round that keeps
+ * all signs right must raise the dual objective; once a block of rows fails to, rows join one by one with step lengths,
+ * which raises it always, so that no working set can come twice.
+ *
+ * @param careful multipliers and point are refined in every round, and rows join one by one.
+ */
+function run(it: Iterate, careful: boolean, limit: number, result: QpResult): QpStatus {
+  const { qp, factor } = it;
+  let single = careful;
+  let best = Number.NEGATIVE_INFINITY;
+  let stalls = 0;
+  let refined = careful;
+  for (let round = 0; round < limit; round++) {
+    result.iterations++;
+    factor.solve();
+    if (refined) {
+      updatePrimal(it);
+      measure(it);
+      refine(it, POLISHED);
+    }
+    if (dropWrongSigns(it)) continue;
+    const objective = factor.objective();
+    if (!(objective > best)) {
+      if (single && ++stalls > 2 * qp.m + 10) return 'failed';
+      single = true;
+    }
+    best = Math.max(best, objective);
+    if (!refined) {
+      updatePrimal(it);
+      multiplyRows(it.values, qp.G, qp.m, qp.n, qp.groupFrom, qp.groupTo, it.x);
+    }
+    const count = findViolated(it);
+    if (count === 0) {
+      if (!refined) {
+        measure(it);
+        if (it.residuals.relative > POLISHED) {
+          refine(it, POLISHED);
+          if (hasWrongSign(it) || findViolated(it) > 0) {
+            refined = true;
+            continue;
+          }
+        }
+      }
+      return it.residuals.relative <= ACCEPTED ? 'optimal' : 'failed';
+    }
+    const bland = stalls > qp.m;
+    const worst = bland ? 0 : findWorst(it, count);
+    if (!single && joinBlock(it, count, worst)) continue;
+    const outcome = joinOne(it, it.candidates[worst], it.gaps[worst]);
+    if (outcome === 'infeasible') {
+      if (findCertificate(it, result.certificate)) return 'infeasible';
+      return 'failed';
+    }
+    if (outcome === 'exempt') it.exempt[it.candidates[worst]] = 1;
+  }
+  return 'iteration-limit';
+}
+
+/** Takes all rows with a wrong-signed multiplier out of the working set. */
+function dropWrongSigns({ factor, side, equal, leave }: Iterate): boolean {
+  const { k, rows, mu } = factor;
+  let count = 0;
+  for (let j = 0; j < k; j++) {
+    const i = rows[j];
+    leave[j] = 0;
+    if (equal[i] === 0 && side[i] * mu[j] < 0) {
+      leave[j] = 1;
+      side[i] = 0;
+      count++;
+    }
+  }
+  if (count > 0) factor.removeMarked(leave);
+  return count > 0;
+}
+
+function hasWrongSign({ factor, side, equal }: Iterate): boolean {
+  for (let j = 0; j < factor.k; j++) {
+    const i = factor.rows[j];
+    if (equal[i] === 0 && side[i] * factor.mu[j] < 0) return true;
+  }
+  return false;
+}
+
+/** Lists the rows outside the working set that are violated beyond rounding, with their signed, scaled excess. */
+function findViolated(it: Iterate): number {
+  const { qp, factor, lower, upper, values, exempt, candidates, gaps, x } = it;
+  const { m, scale, rowSize } = qp;
+  const { place } = factor;
+  let size = -1;
+  let count = 0;
+  for (let i = 0; i < m; i++) {
+    const over = values[i] - upper[i];
+    const under = lower[i] - values[i];
+    const excess = Math.max(over, under);
+    if (!(excess > 0) || place[i] >= 0 || exempt[i] === 1 || scale[i] === 0) continue;
+    if (size < 0) {
+      size = 0;
+      for (let j = 0; j < x.length; j++) size = Math.max(size, Math.abs(x[j]));
+    }
+    const bound = over > under ? upper[i] : lower[i];
+    if (excess <= FEASIBLE * (Math.abs(bound) + rowSize[i] * size)) continue;
+    candidates[count] = i;
+    gaps[count] = (over > under ? excess : -excess) * scale[i];
+    count++;
+  }
+  return count;
+}
+
+function findWorst({ gaps }: Iterate, count: number): number {
+  let worst = 0;
+  for (let c = 1; c < count; c++) if (Math.abs(gaps[c]) > Math.abs(gaps[worst])) worst = c;
+  return worst;
+}
+
+/** Adds the worst row and all that are nearly as bad; false, with nothing changed, when the worst one is dependent. */
+function joinBlock(it: Iterate, count: number, worst: number): boolean {
+  const { factor, candidates, gaps, side } = it;
+  const least = BLOCK_SHARE * Math.abs(gaps[worst]);
+  if (!joinPlain(it, candidates[worst], gaps[worst])) return false;
+  for (let c = 0; c < count && !factor.full; c++) {
+    if (c !== worst && Math.abs(gaps[c]) >= least) joinPlain(it, candidates[c], gaps[c]);
+  }
+  return side.length > 0;
+}
+
+function joinPlain(it: Iterate, row: number, gap: number): boolean {
+  const sign = gap > 0 ? 1 : -1;
+  if (!(it.factor.append(row, rightSide(it, row, sign), BLOCK_PIVOT) >= BLOCK_PIVOT)) return false;
+  it.side[row] = sign;
+  return true;
+}
+
+type Joined = 'joined' | 'exempt' | 'infeasible';
+
+/**
+ * Goldfarb and Idnani's step: the multiplier of `row` grows until the row holds; rows whose multiplier reaches zero on the
+ * way leave. From `factor.mu` with right signs. A row that the working set spans and that nothing
+ * can make room for proves infeasibility; its direction is left in `it.direction`.
+ */
+function joinOne(it: Iterate, row: number, gapSigned: number): Joined {
+  const { qp, factor, side, equal, direction } = it;
+  const sign = gapSigned > 0 ? 1 : -1;
+  const { mu } = factor;
+  let gap = Math.abs(gapSigned);
+  for (;;) {
+    const pivot = factor.project(direction, row);
+    let most = 1;
+    for (let j = 0; j < factor.k; j++) most = Math.max(most, Math.abs(direction[j]));
+    let partial = Number.POSITIVE_INFINITY;
+    let blocking = -1;
+    for (let j = 0; j < factor.k; j++) {
+      const i = factor.rows[j];
+      const rate = side[i] * sign * direction[j];
+      if (equal[i] === 1 || !(rate > LEAST_RATE * most)) continue;
+      const step = Math.max(0, side[i] * mu[j]) / rate;
+      if (step < partial || (step === partial && i < factor.rows[blocking])) {
+        partial = step;
+        blocking = j;
+      }
+    }
+    let full = pivot > DEPENDENT && !factor.full ? gap / pivot : Number.POSITIVE_INFINITY;
+    if (blocking < 0 && full === Number.POSITIVE_INFINITY) {
+      it.entering = row;
+      it.enteringSide = sign;
+      const bound = sign > 0 ? it.upper[row] : it.lower[row];
+      const terms = Math.abs(bound) + qp.rowSize[row] * it.size;
+      if (gap <= CONSISTENT * terms * qp.scale[row]) return 'exempt';
+      if (!(pivot > 1e-15) || factor.full) return 'infeasible';
+      if (findCertificate(it, it.scratchRows)) return 'infeasible';
+      full = gap / pivot;
+    }
+    const step = Math.min(full, partial);
+    for (let j = 0; j < factor.k; j++) mu[j] -= sign * step * direction[j];
+    gap -= step * pivot;
+    if (full <= partial) {
+      side[row] = sign;
+      if (!(factor.append(row, rightSide(it, row, sign), 0) > 0)) {
+        side[row] = 0;
+        return 'exempt';
+      }
+      return 'joined';
+    }
+    side[factor.rows[blocking]] = 0;
+    for (let j = blocking; j + 1 < factor.k; j++) mu[j] = mu[j + 1];
+    factor.removeAt(blocking);
+  }
+}
+
+/** Puts multipliers and residuals into the result for a solve that did not end at an optimum. */
+function finish(it: Iterate, status: QpStatus): void {
+  if (status === 'optimal') return;
+  if (status === 'failed' && !allFinite(it.x)) it.x.fill(Number.NaN);
+  measure(it);
 }

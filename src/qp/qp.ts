@@ -49,7 +49,10 @@ export interface QpResult {
   iterations: number;
   /** For each row: 1 at its upper bound, −1 at its lower bound, 0 inactive. */
   readonly workingSet: Int8Array;
-  /** m entries `v` with `Gᵀ v = 0` and `Σ (v⁺ upper − v⁻ lower) < 0`; meaningful when infeasible. */
+  /**
+   * m entries `v`, zero on soft rows, with `Gᵀ v = 0` and `Σ (v⁺ upper − v⁻ lower) < 0`; meaningful when infeasible.
+   * All zero when the two bounds of one row cross, or a row without coefficients cannot be 0: that row is the proof.
+   */
   readonly certificate: Float64Array;
 }
 
@@ -61,7 +64,8 @@ export interface QpSolver {
   readonly condition: number;
   /**
    * @param q n entries. @param lower, upper m entries, ±Infinity where there is no bound; none is modified.
-   * Never throws for a numerical outcome. The working set of the last solve is the warm start.
+   * Never throws for a numerical outcome. The working set of the last solve is the warm start. A row whose bounds are
+   * equal is an equality, its multiplier free in sign; infinite bounds of the wrong sign count as data that failed.
    */
   readonly solve: (q: Float64Array, lower: Float64Array, upper: Float64Array) => QpResult;
   /** Replaces the warm start: one entry a row as in `QpResult.workingSet`; all zero is a cold start. */

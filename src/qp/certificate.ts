@@ -1,0 +1,61 @@
+import type { Iterate } from './iterate.ts';
+import { addRow, dot } from './products.ts';
+
+/** The proof must exceed the rounding of its own terms by this share of them. */
+const LEAST_MARGIN = 1e-11;
+/** The proof holds for all points up to this many times the size of the present one. */
+const REACH = 1e3;
+
+/**
+ * Turns the direction in which `joinOne` could go on for ever into `v` with `Gᵀ v = 0` and `Σ (v⁺ upper − v⁻ lower) < 0`, and
+ * checks it with G and the bounds themselves: what is left of `Gᵀ v` could be made up for only by points more than a
+ * thousand times larger than the present one. False, when that does not hold: then nothing is proved.
+ *
+ * @param v m entries, overwritten.
+ */
+export function findCertificate(it: Iterate, v: Float64Array): boolean {
+  const { qp, factor, direction, enteringSide, lower, upper, step, right } = it;
+  const { n, scale } = qp;
+  v.fill(0);
+  v[it.entering] = enteringSide * scale[it.entering];
+  for (let j = 0; j < factor.k; j++) {
+    const i = factor.rows[j];
+    v[i] = -enteringSide * scale[i] * direction[j];
+  }
+  for (let pass = 0; pass < 2; pass++) {
+    combine(step, it, v);
+    for (let j = 0; j < factor.k; j++) {
+      const i = factor.rows[j];
+      right[j] = scale[i] * dot(qp.Y, i * n, step, 0, n);
+    }
+    factor.solveOther(right, right);
+    for (let j = 0; j < factor.k; j++) v[factor.rows[j]] -= scale[factor.rows[j]] * right[j];
+  }
+  let most = 0;
+  for (let i = 0; i < v.length; i++) most = Math.max(most, Math.abs(v[i]));
+  let margin = 0;
+  let terms = 0;
+  for (let i = 0; i < v.length; i++) {
+    if (v[i] === 0) continue;
+    const bound = v[i] > 0 ? upper[i] : lower[i];
+    // A soft row gives way, and an open side bounds nothing: neither can be part of a proof.
+    if (qp.softness[i] > 0 || !Number.isFinite(bound)) {
+      v[i] = 0;
+      continue;
+    }
+    margin -= v[i] * bound;
+    terms += Math.abs(v[i] * bound);
+  }
+  combine(step, it, v);
+  let left = 0;
+  for (let j = 0; j < n; j++) left += Math.abs(step[j]);
+  return margin > LEAST_MARGIN * terms && margin > REACH * left * it.size;
+}
+
+/** `out = Gᵀ v`. */
+function combine(out: Float64Array, { qp }: Iterate, v: Float64Array): void {
+  out.fill(0);
+  for (let i = 0; i < v.length; i++) {
+    if (v[i] !== 0) addRow(out, v[i], qp.G, i * qp.n, qp.from[i], qp.to[i]);
+  }
+}

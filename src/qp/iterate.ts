@@ -1,0 +1,175 @@
+import type { PreparedQp } from './prepare.ts';
+import { addRow, dot, largest, multiplyRows } from './products.ts';
+import type { QpResiduals } from './qp.ts';
+import type { WorkingFactor } from './workingFactor.ts';
+
+/** The state of the exact solver: data of the present solve, point, multipliers and room to work in. */
+export interface Iterate {
+  readonly qp: PreparedQp;
+  readonly factor: WorkingFactor;
+  q: Float64Array;
+  lower: Float64Array;
+  upper: Float64Array;
+  /** Minimum without rows. */
+  readonly x0: Float64Array;
+  readonly x: Float64Array;
+  /** `G x`. */
+  readonly values: Float64Array;
+  readonly multipliers: Float64Array;
+  /** For each row of the working set the bound it is held to: 1 upper, −1 lower; 0 outside. */
+  readonly side: Int8Array;
+  /** 1 where both bounds are equal. */
+  readonly equal: Uint8Array;
+  /** 1 for dependent rows that are consistent to within rounding. */
+  readonly exempt: Uint8Array;
+  /** Violated rows and their signed excess times `scale`. */
+  readonly candidates: Int32Array;
+  readonly gaps: Float64Array;
+  /** Marks, one a place of the working set. */
+  readonly leave: Uint8Array;
+  /** `Q[W, W]⁻¹ Q[W, row]` of the row that was to join last. */
+  readonly direction: Float64Array;
+  entering: number;
+  enteringSide: number;
+  /** ‖x‖∞. */
+  size: number;
+  readonly residuals: QpResiduals;
+  /** `H x + q + Gᵀ λ`. */
+  readonly gradient: Float64Array;
+  readonly step: Float64Array;
+  readonly right: Float64Array;
+  readonly scratchRows: Float64Array;
+}
+
+export function createIterate(qp: PreparedQp, factor: WorkingFactor): Iterate {
+  const { n, m } = qp;
+  const none = new Float64Array(0);
+  const room = factor.rows.length;
+  return {
+    qp,
+    factor,
+    q: none,
+    lower: none,
+    upper: none,
+    x0: new Float64Array(n),
+    x: new Float64Array(n),
+    values: new Float64Array(m),
+    multipliers: new Float64Array(m),
+    side: new Int8Array(m),
+    equal: new Uint8Array(m),
+    exempt: new Uint8Array(m),
+    candidates: new Int32Array(m),
+    gaps: new Float64Array(m),
+    leave: new Uint8Array(room),
+    direction: new Float64Array(room),
+    entering: -1,
+    enteringSide: 0,
+    size: 0,
+    residuals: { stationarity: 0, primal: 0, dual: 0, complementarity: 0, relative: 0 },
+    gradient: new Float64Array(n),
+    step: new Float64Array(n),
+    right: new Float64Array(room),
+    scratchRows: new Float64Array(m),
+  };
+}
+
+/** `x = x0 − H⁻¹ Gᵀ λ` from the multipliers of the working set. Cost `k n`, or `n²` where that is less. */
+export function updatePrimal(it: Iterate): void {
+  const { qp, factor, x, x0 } = it;
+  const { n } = qp;
+  const { k, rows, mu } = factor;
+  x.set(x0);
+  for (let j = 0; j < k; j++) {
+    const i = rows[j];
+    addRow(x, -qp.scale[i] * mu[j], qp.Y, i * n - 0, 0, n);
+  }
+  it.size = largest(x);
+}
+
+/** Multipliers, row values and the residuals of all optimality conditions at `x`, against H and G themselves. */
+export function measure(it: Iterate): void {
+  const { qp, factor, x, q, lower, upper, multipliers, gradient, values, residuals } = it;
+  const { n, m, scale, softness, rowSize } = qp;
+  const { k, rows, mu, place } = factor;
+  multipliers.fill(0);
+  let force = 0;
+  multiplyRows(gradient, qp.H, n, n, qp.fullFrom, qp.fullTo, x);
+  for (let i = 0; i < n; i++) gradient[i] += q[i];
+  for (let j = 0; j < k; j++) {
+    const i = rows[j];
+    const lambda = scale[i] * mu[j];
+    multipliers[i] = lambda;
+    addRow(gradient, lambda, qp.G, i * n, qp.from[i], qp.to[i]);
+    const size = Math.abs(lambda) * rowSize[i];
+    if (size > force) force = size;
+  }
+  const size = largest(x);
+  it.size = size;
+  const stationarity = largest(gradient);
+  const terms = Math.max(qp.sizeH * size, largest(q), force);
+
+  multiplyRows(values, qp.G, m, n, qp.groupFrom, qp.groupTo, x);
+  let primal = 0;
+  let dual = 0;
+  let complementarity = 0;
+  let relative = stationarity === 0 ? 0 : stationarity / terms;
+  let largestMultiplier = 0;
+  for (let i = 0; i < m; i++) {
+    const inside = place[i] < 0;
+    const lambda = multipliers[i];
+    const value = inside ? values[i] : values[i] - softness[i] * lambda;
+    const over = value - upper[i];
+    const under = lower[i] - value;
+    const excess = Math.max(over, under);
+    if (!(inside && excess <= 0)) {
+      const bound = over > under ? upper[i] : lower[i];
+      const rowTerms = Math.abs(bound) + rowSize[i] * size + softness[i] * Math.abs(lambda);
+      const distance = inside ? excess : Math.abs(lambda > 0 ? over : under);
+      const violation = Math.max(excess, 0);
+      if (!(violation <= primal)) primal = violation;
+      if (lambda !== 0 && !(Math.abs(lambda) * distance <= complementarity)) {
+        complementarity = Math.abs(lambda) * distance;
+      }
+      const worst = lambda === 0 ? violation : Math.max(violation, distance);
+      if (!(worst === 0) && !(worst / rowTerms <= relative)) relative = worst / rowTerms;
+      if (Math.abs(lambda) > largestMultiplier) largestMultiplier = Math.abs(lambda);
+      if (it.equal[i] === 0 && lambda * it.side[i] < 0 && Math.abs(lambda) > dual) dual = Math.abs(lambda);
+    }
+  }
+  if (dual > 0 && !(dual / largestMultiplier <= relative)) relative = dual / largestMultiplier;
+  residuals.stationarity = stationarity;
+  residuals.primal = primal;
+  residuals.dual = dual;
+  residuals.complementarity = complementarity;
+  residuals.relative = relative;
+}
+
+/**
+ * Iterative refinement of point and multipliers on the working set against H and G themselves, after `measure`: with
+ * residuals `r = H x + q + Gᵀ λ` and `p = G_W x − Σ λ − b`, solves `[H G_Wᵀ; G_W −Σ] (dx, dλ) = −(r, p)` by the factors
+ * at hand, until nothing is above `goal` or a step no longer halves the worst.
+ */
+export function refine(it: Iterate, goal: number): void {
+  const { qp, factor, x, lower, upper, multipliers, gradient, step, right, side, residuals } = it;
+  const { n, scale, softness, Y } = qp;
+  const { rows, mu } = factor;
+  for (let pass = 0; pass < 5; pass++) {
+    const before = residuals.relative;
+    if (before <= goal) return;
+    multiplyRows(step, qp.Hinv, n, n, qp.fullFrom, qp.fullTo, gradient);
+    for (let i = 0; i < n; i++) x[i] -= step[i];
+    for (let j = 0; j < factor.k; j++) {
+      const i = rows[j];
+      const from = qp.from[i];
+      const value = dot(qp.G, i * n + from, x, from, qp.to[i] - from) - softness[i] * multipliers[i];
+      right[j] = scale[i] * (value - (side[i] > 0 ? upper[i] : lower[i]));
+    }
+    factor.solveOther(right, right);
+    for (let j = 0; j < factor.k; j++) {
+      mu[j] += right[j];
+      addRow(x, -scale[rows[j]] * right[j], Y, rows[j] * n, 0, n);
+    }
+    measure(it);
+    if (!(residuals.relative <= 0.5 * before)) return;
+  }
+}

@@ -1,0 +1,95 @@
+/*
+ * Small kernels on flat row-major arrays. Each does one thing on one shape, so that the engine compiles it once.
+ */
+
+/** Rows that one pass of `multiplyRows` takes together. */
+export const GROUP = 4;
+
+/** `Σ a[at + i] b[bt + i]` over `count` entries, in four interleaved sums. */
+export function dot(a: Float64Array, at: number, b: Float64Array, bt: number, count: number): number {
+  const whole = count & ~3;
+  let s0 = 0;
+  let s1 = 0;
+  let s2 = 0;
+  let s3 = 0;
+  for (let i = 0; i < whole; i += 4) {
+    s0 += a[at + i] * b[bt + i];
+    s1 += a[at + i + 1] * b[bt + i + 1];
+    s2 += a[at + i + 2] * b[bt + i + 2];
+    s3 += a[at + i + 3] * b[bt + i + 3];
+  }
+  for (let i = whole; i < count; i++) s0 += a[at + i] * b[bt + i];
+  return s0 + s1 + (s2 + s3);
+}
+
+/** `out[i] += alpha M[at + i]` for `from ≤ i < to`. */
+export function addRow(
+  out: Float64Array,
+  alpha: number,
+  M: Float64Array,
+  at: number,
+  from: number,
+  to: number,
+): void {
+  for (let i = from; i < to; i++) out[i] += alpha * M[at + i];
+}
+
+/**
+ * `out = M v` for M rows × cols, whose rows are zero outside `[groupFrom[g], groupTo[g])`, g = ⌊row / 4⌋: four rows a pass
+ * share each entry of `v`.
+ */
+export function multiplyRows(
+  out: Float64Array,
+  M: Float64Array,
+  rows: number,
+  cols: number,
+  groupFrom: Int32Array,
+  groupTo: Int32Array,
+  v: Float64Array,
+): void {
+  const whole = rows & ~3;
+  for (let i = 0; i < whole; i += 4) {
+    const from = groupFrom[i >> 2];
+    const to = groupTo[i >> 2];
+    const a = i * cols;
+    const b = a + cols;
+    const c = b + cols;
+    const d = c + cols;
+    let sa = 0;
+    let sb = 0;
+    let sc = 0;
+    let sd = 0;
+    for (let j = from; j < to; j++) {
+      const x = v[j];
+      sa += M[a + j] * x;
+      sb += M[b + j] * x;
+      sc += M[c + j] * x;
+      sd += M[d + j] * x;
+    }
+    out[i] = sa;
+    out[i + 1] = sb;
+    out[i + 2] = sc;
+    out[i + 3] = sd;
+  }
+  for (let i = whole; i < rows; i++) {
+    const from = groupFrom[i >> 2];
+    out[i] = dot(M, i * cols + from, v, from, groupTo[i >> 2] - from);
+  }
+}
+
+/** Largest |v[i]|; NaN if one entry is NaN. */
+export function largest(v: Float64Array): number {
+  let most = 0;
+  for (let i = 0; i < v.length; i++) {
+    const size = Math.abs(v[i]);
+    if (!(size <= most)) most = size;
+  }
+  return most;
+}
+
+/** Is every entry finite? */
+export function allFinite(v: Float64Array): boolean {
+  let sum = 0;
+  for (let i = 0; i < v.length; i++) sum += v[i] - v[i];
+  return sum === 0;
+}
