@@ -1,8 +1,8 @@
 import { join } from 'node:path';
-import { exportFiles } from '../export/exportFiles.ts';
 import type { Caution } from '../findings/caution.ts';
 import { findCautions } from '../findings/findCautions.ts';
 import type { StudyResult } from '../findings/studyResult.ts';
+import { readFonts } from './fonts.ts';
 import type { OpenStudy } from './openStudy.ts';
 import { writeFolderWhole, writeWhole } from './writeWhole.ts';
 
@@ -14,17 +14,22 @@ export function exitCodeOf(result: StudyResult, cautions: readonly Caution[]): n
 
 /** Writes `report.html` and the folder `charts`; returns the cautions that the page shows. */
 export async function writeReport({ folder }: OpenStudy, result: StudyResult): Promise<readonly Caution[]> {
-  const { reportFiles } = await import('../report/reportFiles.ts');
   const cautions = findCautions(result);
-  const { page, charts } = await reportFiles(result, cautions);
-  writeFolderWhole(join(folder, 'charts'), charts);
-  writeWhole(join(folder, 'report.html'), page);
+  const { drawCharts } = await import('../report/drawCharts.ts');
+  const charts = drawCharts(result, readFonts());
+  writeFolderWhole(
+    join(folder, 'charts'),
+    charts.map(({ name, png }) => ({ path: name, bytes: png })),
+  );
+  const { buildPage } = await import('../report/buildPage.ts');
+  writeWhole(join(folder, 'report.html'), await buildPage(result, cautions));
   return cautions;
 }
 
 /** Writes the folder `export`; returns the paths of its files below the folder of results. */
 export async function writeExport({ folder }: OpenStudy, result: StudyResult): Promise<readonly string[]> {
-  const files = await exportFiles(result);
+  const { exportFiles } = await import('../export/exportFiles.ts');
+  const files: readonly { path: string; bytes: string | Uint8Array }[] = exportFiles(result);
   writeFolderWhole(join(folder, 'export'), files);
   return files.map(({ path }) => join('export', path));
 }

@@ -20,7 +20,7 @@ import type { Predictor } from '../predictor/predictor.ts';
 import { fitPlainLinear, linearisePredictor } from '../predictor/rivals.ts';
 import { computeSpectrum } from '../predictor/spectrum.ts';
 import { UnusableDataError } from '../predictor/unusableData.ts';
-import { NotConvexError } from '../qp/notConvex.ts';
+import { UnusableQpError } from '../qp/unusableQp.ts';
 import { InputError } from './inputError.ts';
 import { NumericalStop } from './numericalStop.ts';
 import type { OpenStudy } from './openStudy.ts';
@@ -164,7 +164,7 @@ export function stopping<T>({ studyName, lineOf }: OpenStudy, part: () => T): T 
     return part();
   } catch (error) {
     if (error instanceof UnusableDataError) throw new NumericalStop(error.message);
-    if (error instanceof NotConvexError) throw new NumericalStop(`controller: ${error.message}`);
+    if (error instanceof UnusableQpError) throw new NumericalStop(`controller: ${error.message}`);
     if (error instanceof UnusableLiftingError) {
       throw new InputError({ file: studyName, line: lineOf(error.problem.key), ...error.problem });
     }

@@ -5,6 +5,9 @@ import type { LimitReport, TrackingReport } from '../loop/record.ts';
 /** The terminal that the summary must fit. */
 export const SCREEN = { rows: 24, columns: 80 } as const;
 
+/** Width of the first column. */
+const LABEL = 10;
+
 const LABELS: Record<LoopRun['name'], string> = {
   lifted: 'lifted',
   'plain-linear': 'plain linear regression',
@@ -72,7 +75,7 @@ export function writeSummary(
   ];
   for (const [name, entries] of sections) {
     entries.forEach((entry, i) => {
-      const label = (i === 0 ? name : '').padEnd(10);
+      const label = (i === 0 ? name : '').padEnd(LABEL);
       // A path is never cut: it is there to be copied.
       lines.push(name === 'Files' ? `${label}${entry}` : cut(`${label}${entry}`, SCREEN.columns));
     });
@@ -178,5 +181,21 @@ function describeCautions(cautions: readonly Caution[], rows: number): string[] 
     .slice(0, 2)
     .flatMap((severity) => cautions.filter((caution) => caution.severity === severity))
     .map(({ severity, code, sentence }) => `${severity} ${code}: ${sentence}`);
-  return [counts.join(', '), ...firstOf(pressing, rows - 1, 'report.html')];
+  const wrapped = pressing.flatMap((line) => wrap(line, SCREEN.columns - LABEL));
+  // Whole sentences where the screen has room for them, else one line each.
+  const lines = wrapped.length <= rows - 1 ? wrapped : firstOf(pressing, rows - 1, 'report.html');
+  return [counts.join(', '), ...lines];
+}
+
+/** A text in lines of at most `columns`, broken at spaces; continued lines are indented. */
+function wrap(text: string, columns: number): string[] {
+  const lines: string[] = [];
+  let line = '';
+  for (const word of text.split(' ')) {
+    if (line !== '' && line.length + 1 + word.length > columns) {
+      lines.push(line);
+      line = ` ${word}`;
+    } else line = line === '' ? word : `${line} ${word}`;
+  }
+  return [...lines, line];
 }

@@ -185,7 +185,7 @@ describe('the command line', () => {
 });
 
 describe('a small study', () => {
-  it('run does the whole job; the same study and seed give the same bytes, another seed others', () => {
+  it('run does the whole job in at most 23 lines on the screen; another seed gives other data', () => {
     const first = liftwright('run', 'cart/study.yaml');
     expect(first.stderr).toBe('');
     expect([0, 1]).toContain(first.status);
@@ -201,14 +201,11 @@ describe('a small study', () => {
     ]) {
       expect([...files.keys()]).toContain(name);
     }
-    const second = liftwright('run', 'cart/study.yaml', '--out', 'again');
-    expect(second.status).toBe(first.status);
-    expect(bytesBelow('again')).toEqual(files);
     liftwright('experiment', 'cart/study.yaml', '--out', 'other', '--seed', '2');
     expect(bytesBelow('other').get('/dataset.json')).not.toBe(files.get('/dataset.json'));
   });
 
-  it('the verbs one after the other write the same bytes as run', () => {
+  it('same study, same seed, same bytes: the verbs one after the other write what run wrote', () => {
     for (const verb of ['experiment', 'fit', 'assess', 'design', 'simulate', 'report', 'export']) {
       const { status, stderr } = liftwright(verb, 'cart/study.yaml', '--out', 'steps');
       expect(stderr, verb).toBe('');
