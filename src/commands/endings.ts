@@ -2,6 +2,7 @@ import { join } from 'node:path';
 import type { Caution } from '../findings/caution.ts';
 import { findCautions } from '../findings/findCautions.ts';
 import type { StudyResult } from '../findings/studyResult.ts';
+import { readChartScript } from './chartScript.ts';
 import { readFonts } from './fonts.ts';
 import type { OpenStudy } from './openStudy.ts';
 import { writeFolderWhole, writeWhole } from './writeWhole.ts';
@@ -21,8 +22,8 @@ export async function writeReport({ folder }: OpenStudy, result: StudyResult): P
     join(folder, 'charts'),
     charts.map(({ name, png }) => ({ path: name, bytes: png })),
   );
-  const { buildPage } = await import('../report/buildPage.ts');
-  writeWhole(join(folder, 'report.html'), await buildPage(result, cautions));
+  const { renderReport } = await import('../report/page.ts');
+  writeWhole(join(folder, 'report.html'), renderReport(result, cautions, { chartScript: readChartScript() }));
   return cautions;
 }
 
