@@ -1,7 +1,7 @@
 import type { Dataset } from '../data/dataset.ts';
 import type { BoundLifting } from '../lift/lifting.ts';
 import { summariseErrors } from './errorSeries.ts';
-import { predictByFloor } from './floor.ts';
+import { predictByFloorInto } from './floor.ts';
 import { predictWindows, predictWindowsRelifted } from './predict.ts';
 import type { Predictor } from './predictor.ts';
 import { bindPlainLifting } from './rivals.ts';
@@ -27,8 +27,15 @@ export interface TrustRequest {
 
 /** Held-out starts: enough that a 95 % quantile rests on 30 of them. */
 const STARTS = 600;
-/** Fitting windows of the floor: for each of its coefficients a row this many times. */
-const FLOOR_ROWS = { perCoefficient: 60, least: 10_000, most: 20_000 } as const;
+/** Fitting windows of the floor: for each of its coefficients a row this many times; below `fewest` it would fit noise. */
+const FLOOR_ROWS = { perCoefficient: 60, fewest: 10, least: 10_000, most: 20_000 } as const;
+/**
+ * The floor's steps are dealt with in groups that end at these shares of the curve, each with all windows that are long
+ * enough for it: windows as long as the whole curve may be few.
+ */
+const FLOOR_GROUPS = [0.25, 0.5, 0.75, 1];
+/** Share of the typical trajectory that a curve may take, so that starts remain in each of them. */
+const LONGEST = 0.75;
 /** Lifting helps when its mean error ratio to plain linear regression is below this. */
 export const HELPS_BELOW = 0.95;
 /** Normalised errors below this are those of rounding and nobody's advantage. */
@@ -36,7 +43,7 @@ const ROUNDING = 1e-9;
 
 /**
  * Prediction error against steps ahead on held-out trajectories, beside the simplest rivals and the floor; every model
- * is judged on the same starts. The curve is as long as asked, or as half of the held-out and of the fitting trajectories allow.
+ * is judged on the same starts. The curve is as long as asked, or as leaves several starts in a typical trajectory.
  *
  * @throws UnusableDataError when there is no held-out trajectory of one step at least.
  */
@@ -44,7 +51,8 @@ export function assessTrust(request: TrustRequest): TrustCurve {
   const { dataset, predictor, bound, rivals, horizon, tolerance, onProgress } = request;
   const { scaling } = predictor;
   const wanted = request.steps ?? Math.max(2 * horizon, 20);
-  const K = Math.min(wanted, typicalLength(dataset, 'held-out'), typicalLength(dataset, 'fit'));
+  const typical = Math.min(typicalLength(dataset, 'held-out'), typicalLength(dataset, 'fit'));
+  const K = Math.min(wanted, Math.max(Math.ceil(LONGEST * typical), Math.min(horizon, typical)));
   if (!(K >= 1)) {
     throw new UnusableDataError(
       'no trajectory is held out to assess the predictor: leave a share of them over',
@@ -62,12 +70,8 @@ export function assessTrust(request: TrustRequest): TrustCurve {
   add('plain-linear', predictWindows(rivals.plainLinear, plain, held));
   if (rivals.linearised) add('linearised', predictWindows(rivals.linearised, plain, held));
   add('persistence', persist(held));
-  const coefficients = bound.nz + K * held.nu;
-  const rows = Math.min(
-    FLOOR_ROWS.most,
-    Math.max(FLOOR_ROWS.least, FLOOR_ROWS.perCoefficient * coefficients),
-  );
-  add('floor', predictByFloor(cutWindows(dataset, 'fit', scaling, K, rows), held, bound));
+  const floor = predictFloor(request, held);
+  series.push(forgetBeyond(floor.known, summariseErrors('floor', floor.predicted, held, scaling.x)));
   onProgress?.(1);
 
   const rmsOf = (model: TrustSeries['model']) => series.find((s) => s.model === model)?.rms ?? [];
@@ -81,7 +85,42 @@ export function assessTrust(request: TrustRequest): TrustCurve {
     tolerance,
     trustedSteps: leadingRun(lifted, (error) => error <= tolerance),
     lifting: { helps: ratio < HELPS_BELOW, ratio, upTo: lastOfFirstRun(plainRatios) },
-    ratioToFloor: mean(ratios(lifted, rmsOf('floor')).slice(0, horizon)),
+    ratioToFloor: mean(ratios(lifted, rmsOf('floor')).slice(0, horizon).filter(Number.isFinite)),
+  };
+}
+
+/** Predictions of the floor, up to the last step for which there are enough fitting windows to tell it. */
+function predictFloor(
+  { dataset, predictor, bound }: TrustRequest,
+  held: Windows,
+): { predicted: Float64Array; known: number } {
+  const { nx, nu, steps: K } = held;
+  const predicted = new Float64Array(held.count * K * nx);
+  let known = 0;
+  for (const share of FLOOR_GROUPS) {
+    const steps = Math.ceil(share * K);
+    if (steps <= known) continue;
+    const coefficients = bound.nz + steps * nu;
+    const rows = Math.max(FLOOR_ROWS.least, FLOOR_ROWS.perCoefficient * coefficients);
+    const fit = cutWindows(dataset, 'fit', predictor.scaling, steps, Math.min(FLOOR_ROWS.most, rows));
+    if (fit.count < FLOOR_ROWS.fewest * coefficients) break;
+    predictByFloorInto(predicted, fit, held, bound, known);
+    known = steps;
+  }
+  return { predicted, known };
+}
+
+/** The series with NaN for every step after `known`. */
+function forgetBeyond(known: number, series: TrustSeries): TrustSeries {
+  const { model, rms, q50, q90, q95, rmsInUnits } = series;
+  const cut = (values: readonly number[]) => values.map((value, j) => (j < known ? value : Number.NaN));
+  return {
+    model,
+    rms: cut(rms),
+    q50: cut(q50),
+    q90: cut(q90),
+    q95: cut(q95),
+    rmsInUnits: rmsInUnits.map(cut),
   };
 }
 

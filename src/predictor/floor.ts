@@ -20,17 +20,23 @@ const FLOOR_RIDGES = [1e-12, 1e-10, 1e-8];
  * One factorisation serves all j: the regressors of step j are the leading columns of those of the last step, so that
  * the Cholesky factor and the forward-solved targets are leading parts too, and each j is one back substitution.
  *
- * @param fit windows of the fitting trajectories. @param held windows to predict, of the same number of steps.
- * @returns predicted states, count × steps × nx, scaled. Cost `p (p + 2 q)` flops a fitting window with
- * p = nz + steps·nu and q = steps·nx.
+ * @param fit windows of the fitting trajectories. @param held windows to predict, of at least as many steps.
+ * @param after steps up to this one are left alone.
+ * @param out held.count × held.steps × nx, scaled: steps after + 1 … fit.steps are written.
+ * Cost `p (p + 2 q)` flops a fitting window with p = nz + fit.steps·nu and q = fit.steps·nx.
  */
-export function predictByFloor(fit: Windows, held: Windows, bound: BoundLifting): Float64Array {
+export function predictByFloorInto(
+  out: Float64Array,
+  fit: Windows,
+  held: Windows,
+  bound: BoundLifting,
+  after: number,
+): void {
   const { steps, nx, nu } = fit;
   const { nz } = bound;
   const q = steps * nx;
   const { L, X, unit } = factorWindows(fit, bound);
   const p = unit.length;
-  const out = new Float64Array(held.count * q);
   const z = new Float64Array(nz);
   const Z = new Float64Array(held.count * nz);
   for (let w = 0; w < held.count; w++) {
@@ -38,7 +44,7 @@ export function predictByFloor(fit: Windows, held: Windows, bound: BoundLifting)
     Z.set(z, w * nz);
   }
   const theta = new Float64Array(p);
-  for (let c = 0; c < q; c++) {
+  for (let c = after * nx; c < q; c++) {
     const size = nz + (Math.floor(c / nx) + 1) * nu;
     for (let i = 0; i < size; i++) theta[i] = X[i * q + c];
     for (let i = size - 1; i >= 0; i--) {
@@ -49,12 +55,11 @@ export function predictByFloor(fit: Windows, held: Windows, bound: BoundLifting)
     for (let w = 0; w < held.count; w++) {
       let sum = 0;
       for (let i = 0; i < nz; i++) sum += theta[i] * Z[w * nz + i];
-      const inputs = w * steps * nu - nz;
+      const inputs = w * held.steps * nu - nz;
       for (let i = nz; i < size; i++) sum += theta[i] * held.inputs[inputs + i];
-      out[w * q + c] = sum;
+      out[w * held.steps * nx + c] = sum;
     }
   }
-  return out;
 }
 
 /**

@@ -3,7 +3,7 @@ export type TrustModel = 'lifted' | 're-lifted' | 'plain-linear' | 'linearised' 
 
 /**
  * Prediction error of one model against steps ahead, on held-out trajectories. Infinity where a prediction left the
- * range of numbers (re-lifted and bilinear models may).
+ * range of numbers (re-lifted and bilinear models may); NaN for the floor where the data are too few to tell it.
  */
 export interface TrustSeries {
   readonly model: TrustModel;
@@ -32,7 +32,7 @@ export interface TrustCurve {
    * step of the unbroken run from the first step at which lifted is better by at least 5 %.
    */
   readonly lifting: { readonly helps: boolean; readonly ratio: number; readonly upTo: number };
-  /** Mean ratio of lifted to the floor over the horizon: how much a better dictionary could still gain. */
+  /** Mean ratio of lifted to the floor over the horizon, where it is known: how much a better dictionary could still gain. NaN if nowhere. */
   readonly ratioToFloor: number;
 }
 

@@ -1,13 +1,14 @@
 import { describe, expect, it } from 'vitest';
+import type { BoundLifting } from '../../src/lift/lifting.ts';
 import { createRandom } from '../../src/numerics/random.ts';
 import { assessTrust, type TrustRequest } from '../../src/predictor/assessTrust.ts';
 import { fitPredictor } from '../../src/predictor/fit.ts';
-import { predictByFloor } from '../../src/predictor/floor.ts';
+import { predictByFloorInto } from '../../src/predictor/floor.ts';
 import { predictWindows } from '../../src/predictor/predict.ts';
 import { bindPlainLifting, fitPlainLinear, linearisePredictor } from '../../src/predictor/rivals.ts';
 import type { TrustModel } from '../../src/predictor/trust.ts';
 import { UnusableDataError } from '../../src/predictor/unusableData.ts';
-import { cutWindows } from '../../src/predictor/windows.ts';
+import { cutWindows, type Windows } from '../../src/predictor/windows.ts';
 import { channels, largestDifference, liftBy, rk4, simulate, thinPlates, unitScaling } from './synthetic.ts';
 
 const role = (t: number) => (t % 4 === 3 ? 'held-out' : 'fit');
@@ -64,6 +65,13 @@ const rmsOf = (curve: ReturnType<typeof assess>, model: TrustModel) => {
   if (!series) throw new Error(`no series ${model}`);
   return series;
 };
+
+/** The floor at every step of the windows. */
+function predictFloor(fit: Windows, held: Windows, bound: BoundLifting): Float64Array {
+  const out = new Float64Array(held.states.length);
+  predictByFloorInto(out, fit, held, bound, 0);
+  return out;
+}
 
 describe('the trust curve', () => {
   const lifted = thinPlates(30, createRandom(1), true);
@@ -135,7 +143,7 @@ describe('the trust curve', () => {
     const settings = { form: 'linear', route: 'auto', ridge: 0 } as const;
     const windows = cutWindows(springs, 'fit', scaling, 12, 10_000);
     const predictor = fitPredictor({ ...common, ...lifted, dataset: springs, settings, horizon: 12 });
-    const floor = predictByFloor(windows, windows, lifted.bound);
+    const floor = predictFloor(windows, windows, lifted.bound);
     const predicted = predictWindows(predictor, lifted.bound, windows);
     const square = (values: Float64Array, j: number) => {
       let sum = 0;
@@ -160,11 +168,22 @@ describe('the trust curve', () => {
     const windows = (r: 'fit' | 'held-out') => cutWindows(dataset, r, scaling, 15, 1000);
     const held = windows('held-out');
     // The ridge of 1e-12 (up to 1e-8 for the copy) leaves an error of its size.
-    expect(largestDifference(predictByFloor(windows('fit'), held, bound), held.states)).toBeLessThan(1e-6);
+    expect(largestDifference(predictFloor(windows('fit'), held, bound), held.states)).toBeLessThan(1e-6);
   });
 
-  it('is as long as half of the trajectories allow, and refuses data with nothing held out', () => {
-    expect(assess(springs, lifted, 10, { steps: 400 }).steps.length).toBe(50);
+  it('leaves the floor open where the fitting windows are too few to tell it, and does not count those steps', () => {
+    // Windows of 38 steps in trajectories of 50: 13 each, fewer in all than ten for each of 40 coefficients.
+    const few = assess(springs, lifted, 10, { steps: 400 });
+    const floor = few.series.find(({ model }) => model === 'floor');
+    expect(floor?.rms.slice(0, 5).every(Number.isFinite)).toBe(true);
+    expect(floor?.rms.at(-1)).toBeNaN();
+    expect(floor?.rmsInUnits[0].at(-1)).toBeNaN();
+    expect(few.ratioToFloor).toBeGreaterThan(0.5);
+  });
+
+  it('leaves several starts in a typical trajectory, and refuses data with nothing held out', () => {
+    expect(assess(springs, lifted, 10, { steps: 400 }).steps.length).toBe(38);
+    expect(assess(springs, lifted, 45, { steps: 400 }).steps.length).toBe(45);
     const none = { ...springs, trajectories: springs.trajectories.filter((t) => t.role === 'fit') };
     expect(() => assess(none, lifted)).toThrow(UnusableDataError);
   });
