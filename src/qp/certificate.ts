@@ -1,4 +1,5 @@
 import type { Iterate } from './iterate.ts';
+import type { OrthogonalFactor } from './orthogonalFactor.ts';
 import { addRow, dot } from './products.ts';
 
 /** The proof must exceed the rounding of its own terms by this share of them. */
@@ -11,9 +12,9 @@ const REACH = 1e3;
  * checks it with G and the bounds themselves: what is left of `Gᵀ v` could be made up for only by points more than a
  * thousand times larger than the present one. False, when that does not hold: then nothing is proved.
  *
- * @param v m entries, overwritten.
+ * @param orthogonal the factor to refine with; null: the working set's own. @param v m entries, overwritten.
  */
-export function findCertificate(it: Iterate, v: Float64Array): boolean {
+export function findCertificate(it: Iterate, orthogonal: OrthogonalFactor | null, v: Float64Array): boolean {
   const { qp, factor, direction, enteringSide, lower, upper, step, right } = it;
   const { n, scale } = qp;
   v.fill(0);
@@ -24,12 +25,18 @@ export function findCertificate(it: Iterate, v: Float64Array): boolean {
   }
   for (let pass = 0; pass < 2; pass++) {
     combine(step, it, v);
-    for (let j = 0; j < factor.k; j++) {
-      const i = factor.rows[j];
-      right[j] = scale[i] * dot(qp.Y, i * n, step, 0, n);
+    if (orthogonal) {
+      for (let j = n - 1; j >= 0; j--) step[j] = dot(qp.Linv, j * n, step, 0, j + 1);
+      right.fill(0);
+      orthogonal.correct(step, right);
+    } else {
+      for (let j = 0; j < factor.k; j++) {
+        const i = factor.rows[j];
+        right[j] = -scale[i] * dot(qp.Y, i * n, step, 0, n);
+      }
+      factor.solveOther(right, right);
     }
-    factor.solveOther(right, right);
-    for (let j = 0; j < factor.k; j++) v[factor.rows[j]] -= scale[factor.rows[j]] * right[j];
+    for (let j = 0; j < factor.k; j++) v[factor.rows[j]] += scale[factor.rows[j]] * right[j];
   }
   let most = 0;
   for (let i = 0; i < v.length; i++) most = Math.max(most, Math.abs(v[i]));

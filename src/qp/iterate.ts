@@ -33,12 +33,13 @@ export interface Iterate {
   enteringSide: number;
   /** ‖x‖∞. */
   size: number;
+  /** Relative residual of the equations that the working set makes: what refinement can mend. */
+  unsolved: number;
   readonly residuals: QpResiduals;
   /** `H x + q + Gᵀ λ`. */
   readonly gradient: Float64Array;
   readonly step: Float64Array;
   readonly right: Float64Array;
-  readonly scratchRows: Float64Array;
 }
 
 export function createIterate(qp: PreparedQp, factor: WorkingFactor): Iterate {
@@ -65,11 +66,11 @@ export function createIterate(qp: PreparedQp, factor: WorkingFactor): Iterate {
     entering: -1,
     enteringSide: 0,
     size: 0,
+    unsolved: 0,
     residuals: { stationarity: 0, primal: 0, dual: 0, complementarity: 0, relative: 0 },
     gradient: new Float64Array(n),
     step: new Float64Array(n),
     right: new Float64Array(room),
-    scratchRows: new Float64Array(m),
   };
 }
 
@@ -81,7 +82,7 @@ export function updatePrimal(it: Iterate): void {
   x.set(x0);
   for (let j = 0; j < k; j++) {
     const i = rows[j];
-    addRow(x, -qp.scale[i] * mu[j], qp.Y, i * n - 0, 0, n);
+    addRow(x, -qp.scale[i] * mu[j], qp.Y, i * n, 0, n);
   }
   it.size = largest(x);
 }
@@ -112,7 +113,8 @@ export function measure(it: Iterate): void {
   let primal = 0;
   let dual = 0;
   let complementarity = 0;
-  let relative = stationarity === 0 ? 0 : stationarity / terms;
+  let unsolved = stationarity === 0 ? 0 : stationarity / terms;
+  let relative = unsolved;
   let largestMultiplier = 0;
   for (let i = 0; i < m; i++) {
     const inside = place[i] < 0;
@@ -124,12 +126,13 @@ export function measure(it: Iterate): void {
     if (!(inside && excess <= 0)) {
       const bound = over > under ? upper[i] : lower[i];
       const rowTerms = Math.abs(bound) + rowSize[i] * size + softness[i] * Math.abs(lambda);
-      const distance = inside ? excess : Math.abs(lambda > 0 ? over : under);
+      const distance = inside ? excess : Math.abs(it.side[i] > 0 ? over : under);
       const violation = Math.max(excess, 0);
       if (!(violation <= primal)) primal = violation;
       if (lambda !== 0 && !(Math.abs(lambda) * distance <= complementarity)) {
         complementarity = Math.abs(lambda) * distance;
       }
+      if (!inside && !(distance === 0) && !(distance / rowTerms <= unsolved)) unsolved = distance / rowTerms;
       const worst = lambda === 0 ? violation : Math.max(violation, distance);
       if (!(worst === 0) && !(worst / rowTerms <= relative)) relative = worst / rowTerms;
       if (Math.abs(lambda) > largestMultiplier) largestMultiplier = Math.abs(lambda);
@@ -142,6 +145,7 @@ export function measure(it: Iterate): void {
   residuals.dual = dual;
   residuals.complementarity = complementarity;
   residuals.relative = relative;
+  it.unsolved = unsolved;
 }
 
 /**
@@ -150,11 +154,11 @@ export function measure(it: Iterate): void {
  * at hand, until nothing is above `goal` or a step no longer halves the worst.
  */
 export function refine(it: Iterate, goal: number): void {
-  const { qp, factor, x, lower, upper, multipliers, gradient, step, right, side, residuals } = it;
+  const { qp, factor, x, lower, upper, multipliers, gradient, step, right, side } = it;
   const { n, scale, softness, Y } = qp;
   const { rows, mu } = factor;
   for (let pass = 0; pass < 5; pass++) {
-    const before = residuals.relative;
+    const before = it.unsolved;
     if (before <= goal) return;
     multiplyRows(step, qp.Hinv, n, n, qp.fullFrom, qp.fullTo, gradient);
     for (let i = 0; i < n; i++) x[i] -= step[i];
@@ -170,6 +174,6 @@ export function refine(it: Iterate, goal: number): void {
       addRow(x, -scale[rows[j]] * right[j], Y, rows[j] * n, 0, n);
     }
     measure(it);
-    if (!(residuals.relative <= 0.5 * before)) return;
+    if (!(it.unsolved <= 0.5 * before)) return;
   }
 }

@@ -10,12 +10,16 @@ export interface PreparedQp {
   readonly m: number;
   /** n × n, exactly symmetric. */
   readonly H: Float64Array;
+  /** n × n, inverse of the lower Cholesky factor of H. */
+  readonly Linv: Float64Array;
   /** n × n, `H⁻¹`. */
   readonly Hinv: Float64Array;
   /** m × n. */
   readonly G: Float64Array;
   /** m × n, `G H⁻¹`. */
   readonly Y: Float64Array;
+  /** m × n, `S G L⁻ᵀ`. */
+  readonly T: Float64Array;
   /** m × m, `S (G H⁻¹ Gᵀ + diag(softness)) S`, unit diagonal. */
   readonly Q: Float64Array;
   /** m entries: S; 0 for a row that is all zero. */
@@ -95,9 +99,11 @@ export function prepareQp({ H: givenH, G: givenG, softness }: QpStructure): Prep
     n,
     m,
     H,
+    Linv,
     Hinv,
     G,
     Y,
+    T,
     Q,
     scale,
     softness: softness.slice(),
