@@ -4,7 +4,8 @@ import { findCautions } from '../findings/findCautions.ts';
 import type { StudyResult } from '../findings/studyResult.ts';
 import { readChartScript } from './chartScript.ts';
 import { readFonts } from './fonts.ts';
-import type { OpenStudy } from './openStudy.ts';
+import { type OpenStudy, studyName } from './openStudy.ts';
+import { version } from './version.ts';
 import { writeFolderWhole, writeWhole } from './writeWhole.ts';
 
 /** 1 when an acceptance limit was missed or a caution is an error, else 0. */
@@ -28,9 +29,12 @@ export async function writeReport({ folder }: OpenStudy, result: StudyResult): P
 }
 
 /** Writes the folder `export`; returns the paths of its files below the folder of results. */
-export async function writeExport({ folder }: OpenStudy, result: StudyResult): Promise<readonly string[]> {
+export async function writeExport(
+  { folder, study }: OpenStudy,
+  result: StudyResult,
+): Promise<readonly string[]> {
   const { exportFiles } = await import('../export/exportFiles.ts');
-  const files: readonly { path: string; bytes: string | Uint8Array }[] = exportFiles(result);
+  const files = exportFiles(result, { name: studyName(study.file), version: version() });
   writeFolderWhole(join(folder, 'export'), files);
   return files.map(({ path }) => join('export', path));
 }

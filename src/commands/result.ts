@@ -1,5 +1,5 @@
+import { datasetBytes } from '../export/datasetBytes.ts';
 import type { StudyResult } from '../findings/studyResult.ts';
-import { encodeRecord } from './encode.ts';
 import type { OpenStudy } from './openStudy.ts';
 import { readStage, type StageContents, sha256 } from './stageFiles.ts';
 
@@ -9,7 +9,7 @@ export function makeResult({ study, plant }: OpenStudy, stages: StageContents): 
   return {
     title: study.title,
     studyHash: study.hash,
-    dataHash: sha256(encodeRecord(dataset)),
+    dataHash: sha256(datasetBytes(dataset)),
     seed: study.seed,
     plant,
     sampleTime: study.sampleTime,
