@@ -94,6 +94,7 @@ function renderPlate({
   sampleTime,
   design,
   predictor,
+  scenario,
   seed,
   studyHash,
   dataHash,
@@ -103,6 +104,7 @@ function renderPlate({
     ['sample time', withUnit(sampleTime, 's')],
     ['horizon', stepsAhead(design.problem.horizon, sampleTime)],
     ['lifted functions', String(predictor.lifting.nz)],
+    ['scenario', withUnit(scenario.duration, 's')],
     ['seed', String(seed)],
     ['study', studyHash.slice(0, 12)],
     ['data', dataHash.slice(0, 12)],
@@ -111,17 +113,17 @@ function renderPlate({
   return `<dl class="plate">${cells.join('')}</dl>`;
 }
 
-/** Standing told by sign and word, not by colour alone. */
+/** Standing told by sign and word, not by colour alone; drawn, because not every font has such signs. */
 const STANDINGS = {
-  good: ['✓', 'good'],
-  bad: ['✗', 'attention'],
-  open: ['–', 'to be judged'],
+  good: ['M3 9.5 L7 13.5 L14 3.5', 'good'],
+  bad: ['M3.5 3.5 L13.5 13.5 M13.5 3.5 L3.5 13.5', 'attention'],
+  open: ['M3 8.5 L14 8.5', 'to be judged'],
 } as const;
 
 function renderVerdict(lines: readonly VerdictLine[]): string {
   const items = lines.map(({ standing, about, sentence }) => {
-    const [sign, word] = STANDINGS[standing];
-    const mark = `<span class="mark" role="img" aria-label="${word}">${sign}</span>`;
+    const [path, word] = STANDINGS[standing];
+    const mark = `<svg class="mark" viewBox="0 0 17 17" role="img" aria-label="${word}"><path d="${path}"/></svg>`;
     return `<li class="${standing}"><span class="about">${mark}${escapeHtml(about)}</span><span>${escapeHtml(sentence)}</span></li>`;
   });
   return `<ul class="verdict">${items.join('\n')}</ul>`;
@@ -130,10 +132,10 @@ function renderVerdict(lines: readonly VerdictLine[]): string {
 function renderCautions(cautions: readonly Caution[]): string {
   if (cautions.length === 0) return '<p>None besides the hazards below.</p>';
   const items = cautions.map(({ code, severity, sentence, value, unit, whatToDo }) => {
-    const number = value === null ? '' : ` <span class="quiet">[${escapeHtml(withUnit(value, unit))}]</span>`;
+    const number = value === null ? '' : `, ${escapeHtml(withUnit(value, unit))}`;
     return [
-      `<li class="${severity}"><p><span class="kind">${sentenceCase(severity)}</span> <span class="quiet">${escapeHtml(code)}</span></p>`,
-      `<p>${escapeHtml(sentence)}${number}</p>`,
+      `<li class="${severity}"><p><span class="kind">${sentenceCase(severity)}</span> <span class="quiet">${escapeHtml(code)}${number}</span></p>`,
+      `<p>${escapeHtml(sentence)}</p>`,
       `<p><span class="quiet">What to do:</span> ${escapeHtml(whatToDo)}</p></li>`,
     ].join('\n');
   });

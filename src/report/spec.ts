@@ -37,8 +37,6 @@ export type Mark =
       readonly width: number;
       /** Nameless lines lie under the series. */
       readonly label: string;
-      /** For flat lines: the end at which the name stands, above it at the start, below it at the end. */
-      readonly named?: 'start' | 'end';
     }
   | {
       readonly kind: 'circle';
@@ -56,8 +54,8 @@ export type Mark =
       readonly at: { readonly x: number; readonly y: number };
       readonly text: string;
       readonly colour: string;
-      /** `end`: to the right of the plot; `above`: centred over the point; `below`: under it. */
-      readonly place: 'end' | 'above' | 'below';
+      /** `end`: to the right of the plot; `right`: to the right of the point. */
+      readonly place: 'end' | 'right';
     }
   /** Words in the left upper corner of the panel of one y axis. */
   | { readonly kind: 'caption'; readonly axis: string; readonly text: string }

@@ -32,7 +32,7 @@ export const COLOURS = {
   linearised: { light: '#9c3587', dark: '#dd8fcf' },
   persistence: { light: '#808080', dark: '#8d9499' },
   floor: { light: '#000000', dark: '#ffffff' },
-  fitData: { light: '#a9bbd3', dark: '#44566d' },
+  fitData: { light: '#a9bbd3', dark: '#5f7796' },
   heldOut: { light: '#6f6f6f', dark: '#a3a3a3' },
   broken: { light: '#c00d24', dark: '#ff7384' },
 } as const;

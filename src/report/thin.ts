@@ -43,14 +43,20 @@ export function thinSeries(x: ArrayLike<number>, y: ArrayLike<number>, buckets =
   return points;
 }
 
-/** What a cloud is thinned to: one point for each of so many cells of its own extent. */
-const CELLS = { across: 110, up: 70 } as const;
+/** Cells of its own extent for each of which a cloud keeps one point. */
+export interface CloudCells {
+  readonly across: number;
+  readonly up: number;
+}
 
 /**
  * A cloud of points thinned to one for each cell of a grid over its extent, besides the extreme points of both coordinates.
  * What is left covers the same area; points that are not finite are left out.
  */
-export function thinCloud(points: readonly { readonly x: number; readonly y: number }[]): Point[] {
+export function thinCloud(
+  points: readonly { readonly x: number; readonly y: number }[],
+  { across, up }: CloudCells,
+): Point[] {
   const finite = points.filter(({ x, y }) => Number.isFinite(x) && Number.isFinite(y));
   if (finite.length === 0) return [];
   const extreme = (key: 'x' | 'y', sign: 1 | -1) =>
@@ -61,8 +67,7 @@ export function thinCloud(points: readonly { readonly x: number; readonly y: num
   const seen = new Set<number>();
   const kept = [left, right, bottom, top];
   for (const point of finite) {
-    const at =
-      cell(point.x, left.x, right.x, CELLS.across) * CELLS.up + cell(point.y, bottom.y, top.y, CELLS.up);
+    const at = cell(point.x, left.x, right.x, across) * up + cell(point.y, bottom.y, top.y, up);
     if (seen.has(at)) continue;
     seen.add(at);
     kept.push(point);

@@ -105,8 +105,7 @@ export function closedLoopChart(result: StudyResult): ChartSpec {
     name: 'closed-loop',
     title,
     reading:
-      'The true plant under the lifted controller. Hatched: where the signal must not be. ' +
-      'A thick line and a triangle, where there are any, mark each excursion beyond a limit, between the samples too, and its worst point.',
+      'Hatched: where the signal must not be; a thick line and a triangle mark each excursion beyond a limit, between the samples too, and its worst point.',
     alternative: `${title}. ${describeTracking(result)}`,
     height: Math.max(450, 110 + 150 * Object.keys(panels).length),
     series,

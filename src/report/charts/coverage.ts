@@ -3,8 +3,8 @@ import type { StudyResult } from '../../findings/studyResult.ts';
 import type { Channel } from '../../plant/plant.ts';
 import type { ChartSpec, SeriesSpec } from '../spec.ts';
 import { COLOURS } from '../style.ts';
-import { plotted, thinCloud } from '../thin.ts';
-import { axisTitle, percent } from '../words.ts';
+import { type CloudCells, plotted, thinCloud } from '../thin.ts';
+import { axisTitle, percent, sentenceCase } from '../words.ts';
 import { column, lineSeries, paddedRange, pointSeries } from './series.ts';
 
 const AXES = { x: 'x', y: 'y' } as const;
@@ -95,9 +95,10 @@ function coverageChart(
 ): ChartSpec {
   const outside = runs[0]?.record.outsideData ?? 0;
   const zip = (x: Float64Array, y: Float64Array) => Array.from(x, (value, k) => ({ x: value, y: y[k] }));
-  const cloud = (role: Role) => thinCloud(zip(across.byRole(role), up.byRole(role)));
-  const fit = cloud('fit');
-  const heldOut = cloud('held-out');
+  const cloud = (role: Role, cells: CloudCells) =>
+    thinCloud(zip(across.byRole(role), up.byRole(role)), cells);
+  const fit = cloud('fit', { across: 110, up: 70 });
+  const heldOut = cloud('held-out', { across: 55, up: 35 });
   const path = across.path && up.path ? zip(across.path, up.path) : [];
   const points = path.map(({ x, y }) => ({ x: plotted(x) ?? 0, y: plotted(y) }));
   const shown = [...fit, ...heldOut];
@@ -143,7 +144,7 @@ function coverageChart(
   return {
     name: index === 0 ? 'coverage' : `coverage-${index + 1}`,
     title,
-    reading: `${named}: where the line leaves the dots, the predictor extrapolates. Dots are thinned where they lie close.`,
+    reading: `${sentenceCase(named)}: where the line leaves the dots, the predictor extrapolates. Dots are thinned where they lie close.`,
     alternative: `${title}. ${named}: samples for fitting, held-out samples and the closed-loop path.`,
     height: 450,
     // The first in the list is drawn on top; the key keeps the order of the list.

@@ -54,6 +54,7 @@ export function chartConfig(description: ChartSpec, view: ChartView): ChartConfi
           color: view.quiet,
           font: font(text.tick),
           padding: 6,
+          callback: axis.type === 'linear' ? tickText : undefined,
           includeBounds: false,
           maxRotation: 0,
           autoSkipPadding: 14,
@@ -135,6 +136,14 @@ export function breakLines(text: string, most: number): string[] {
     else lines.push(word);
   }
   return lines;
+}
+
+/** A tick in few characters: long figures as `5e6`. */
+export function tickText(value: number | string): string {
+  const figure = Number(Number(value).toPrecision(6));
+  const size = Math.abs(figure);
+  if (size === 0 || (size >= 1e-3 && size < 1e5)) return String(figure);
+  return figure.toExponential().replace('e+', 'e');
 }
 
 /** Leaves the powers of ten, or 1, 2 and 5 of each where there are fewer than three powers of ten. */
@@ -285,11 +294,9 @@ function drawAbove(
     const at = strokeLine(chart, mark);
     if (at === null) continue;
     ctx.textBaseline = 'middle';
-    const scale = chart.scales[mark.axis];
-    if (!scale.isHorizontal()) {
-      const end = mark.named === 'end';
-      ctx.textAlign = end ? 'right' : 'left';
-      write(mark.label, end ? area.right - 8 : area.left + 8, at + (end ? 0.85 : -0.85) * size, mark.colour);
+    if (!chart.scales[mark.axis].isHorizontal()) {
+      ctx.textAlign = 'left';
+      write(mark.label, area.left + 8, at - 0.85 * size, mark.colour);
     } else {
       const left = at + 6 + ctx.measureText(mark.label).width > area.right;
       ctx.textAlign = left ? 'right' : 'left';
@@ -333,10 +340,8 @@ function drawLabels(
       continue;
     }
     ctx.textBaseline = 'middle';
-    const half = ctx.measureText(mark.text).width / 2;
-    ctx.textAlign = 'center';
-    const inside = Math.min(area.right - half - 4, Math.max(area.left + half + 4, x));
-    write(mark.text, inside, y + (mark.place === 'above' ? -1 : 1) * (size * 0.7 + 9), mark.colour);
+    ctx.textAlign = 'left';
+    write(mark.text, x + 10, Math.max(y, scale.top + size), mark.colour);
   }
   if (endLabels === 0) return;
   ends.sort((a, b) => a.y - b.y);
@@ -485,6 +490,7 @@ export function drawingSource(): string {
     chartConfig,
     recolour,
     breakLines,
+    tickText,
     keepDecades,
     equaliseScales,
     paint,

@@ -24,7 +24,11 @@ export function spectrumChart({ spectrum, sampleTime }: StudyResult): ChartSpec 
       ? `${plural(growing.length, 'eigenvalue')} of ${modes.length} outside the unit circle; the fastest grows by ${formatFigure(100 * (radius - 1))} % a step`
       : `All ${modes.length} eigenvalues lie within the unit circle or on it`;
   const time = (seconds: number) => (Number.isFinite(seconds) ? withUnit(seconds, 's') : 'none');
+  // Room on the right for the note, beside the arc and not on it.
+  const reals = [...real.filter(Number.isFinite), 1];
+  const across = [...reals, 1 + 0.4 * (Math.max(...reals) - Math.min(...reals))];
   const note = [
+    'arc: unit circle',
     `spectral radius ${Number(radius.toPrecision(6))}`,
     `fastest mode ${time(fastest)}`,
     `slowest mode ${time(slowest)}`,
@@ -35,7 +39,7 @@ export function spectrumChart({ spectrum, sampleTime }: StudyResult): ChartSpec 
     title,
     reading:
       'Each mark is an eigenvalue of the predictor matrix A: inside the circle its mode decays, outside it grows from step to step, near 1 it is slow. The window holds all eigenvalues and the point 1.',
-    alternative: `${title}. ${note.join(', ')}.`,
+    alternative: `${title}. ${note.slice(1).join(', ')}.`,
     height: 520,
     series: [
       pointSeries('decaying', decaying.map(round), AXES, {
@@ -60,7 +64,7 @@ export function spectrumChart({ spectrum, sampleTime }: StudyResult): ChartSpec 
         type: 'linear',
         position: 'bottom',
         title: 'real part',
-        ...windowOf([...modes.map(({ x }) => x), 1], 0),
+        ...windowOf(across, 0),
       },
       y: {
         type: 'linear',

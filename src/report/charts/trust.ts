@@ -17,6 +17,9 @@ const ORDER: readonly TrustModel[] = [
   'lifted',
 ];
 
+/** Models whose errors set the height of the plot; the others may explode. */
+const STEADY: readonly TrustModel[] = ['lifted', 'plain-linear', 'persistence', 'floor'];
+
 /** Held-out error of the lifted predictor against steps ahead, beside its rivals. */
 export function trustChart(result: StudyResult): ChartSpec {
   const { trust, sampleTime, design } = result;
@@ -38,9 +41,7 @@ export function trustChart(result: StudyResult): ChartSpec {
     name: 'trust',
     title: titleOf(result),
     reading:
-      'Each line is the held-out error of one predictor, as RMS over coordinates and starts in % of half their range; lower is better. ' +
-      'The shaded steps are those at which the lifted predictor stays within the tolerance; the tinted belt is where the middle to the 95 % quantile of its errors lie. ' +
-      'The floor is what a direct regression of each step ahead reaches with the same lifting: other constant matrices can hardly go below it.',
+      'Held-out RMS error of each predictor against steps ahead, lower is better; in the shaded steps the lifted one stays within the tolerance, and its tinted belt reaches from the middle to the 95 % quantile.',
     alternative: `${titleOf(result)}. ${describeAt(shown, horizon, steps)}`,
     height: 470,
     series: [...spread, ...lines],
@@ -85,8 +86,15 @@ export function trustChart(result: StudyResult): ChartSpec {
         colour: COLOURS.ink.light,
         dash: [],
         width: 1,
-        label: `tolerance ${percent(limit)}`,
-        named: 'end',
+        label: '',
+      },
+      {
+        kind: 'label',
+        ...AXES,
+        at: { x: steps.at(-1) ?? 1, y: 100 * limit },
+        text: `tolerance ${percent(limit)}`,
+        colour: COLOURS.ink.light,
+        place: 'end',
       },
       {
         kind: 'line',
@@ -131,11 +139,11 @@ function titleOf({ trust, sampleTime }: StudyResult): string {
 /** Range of the error axis in %: what the models show, but neither rounding nor explosions. */
 function errorRange(shown: readonly TrustSeries[], tolerance: number): { min: number; max: number } {
   const values = shown.flatMap(({ rms }) => rms.filter((value) => Number.isFinite(value) && value > 0));
-  const tame = shown.flatMap(({ model, rms }) => (model === 'linearised' ? [] : rms)).filter(Number.isFinite);
+  const tame = shown.flatMap(({ model, rms }) => (STEADY.includes(model) ? rms : [])).filter(Number.isFinite);
   const high =
     100 * Math.max(tolerance, Math.min(Math.max(...values, tolerance), 4 * Math.max(...tame, tolerance), 30));
   const low = 100 * Math.min(tolerance, Math.max(Math.min(...values, tolerance), tolerance * 1e-5));
-  return { min: low / 1.5, max: high * 1.5 };
+  return { min: low / 1.5, max: high * 2.5 };
 }
 
 /** Two unnamed lines with the space between them tinted. */
@@ -163,7 +171,9 @@ function endLabels(
     if (last < 0) return [];
     const { label, colour } = MODEL_STYLES[model];
     const y = Math.max(100 * rms[last], range.min);
-    return [{ kind: 'label', ...AXES, at: { x: steps[last], y }, text: label, colour, place: 'end' }];
+    const place = last === rms.length - 1 ? 'end' : 'right';
+    const text = place === 'end' ? label : `${label}, leaves the plot`;
+    return [{ kind: 'label', ...AXES, at: { x: steps[last], y }, text, colour, place }];
   });
 }
 

@@ -16,16 +16,16 @@ h2 { font-size: 1.25rem; margin: 2.5rem 0 .75rem; padding-bottom: .25rem; border
 h3 { font-size: 1.05rem; line-height: 1.35; margin: 2rem 0 .25rem; }
 p { margin: .25rem 0 .75rem; max-width: 46rem; }
 .quiet { color: var(--quiet); }
-.plate { display: grid; grid-template-columns: repeat(auto-fit, minmax(8.5rem, 1fr)); margin: 1rem 0 0; border: 1px solid var(--ink); }
-.plate div { padding: .35rem .6rem; margin: 0 -1px -1px 0; border: 1px solid var(--rule); border-width: 0 1px 1px 0; }
+.plate { display: grid; grid-template-columns: repeat(4, 1fr); gap: 1px; margin: 1rem 0 0; border: 1px solid var(--ink); background: var(--rule); }
+.plate div { padding: .35rem .6rem; background: var(--paper); }
 .plate dt { font-size: .78rem; color: var(--quiet); }
 .plate dd { margin: 0; overflow-wrap: anywhere; }
 nav ol { display: flex; flex-wrap: wrap; gap: .25rem 1.25rem; list-style: none; margin: 1rem 0 0; padding: 0; font-size: .92rem; }
 .verdict { list-style: none; margin: 0; padding: 0; }
 .verdict li { display: grid; grid-template-columns: 8.5rem 1fr; gap: 0 1rem; padding: .5rem 0; border-bottom: 1px solid var(--rule); }
 .verdict .about { font-weight: 700; }
-.mark { display: inline-block; width: 1.3em; font-weight: 700; }
-.good .mark { color: var(--good); } .bad .mark { color: var(--bad); } .open .mark { color: var(--open); }
+.mark { width: 1.05em; height: 1.05em; margin-right: .5em; vertical-align: -.12em; fill: none; stroke-width: 2.6; stroke-linecap: round; }
+.good .mark { stroke: var(--good); } .bad .mark { stroke: var(--bad); } .open .mark { stroke: var(--open); }
 .cautions { list-style: none; margin: 0; padding: 0; }
 .cautions li { padding: .6rem .9rem; margin: 0 0 .6rem; background: var(--faint); border-left: 5px solid var(--rule); }
 .cautions li.error { border-left-color: var(--bad); } .cautions li.warning { border-left: 5px double var(--open); } .cautions li.note { border-left-style: dotted; }
@@ -46,13 +46,14 @@ caption { text-align: left; font-weight: 600; padding: 0 0 .35rem; }
 th, td { text-align: left; vertical-align: top; padding: .25rem .9rem .25rem 0; border-bottom: 1px solid var(--rule); }
 thead th { border-bottom: 1.5px solid var(--ink); vertical-align: bottom; }
 tbody th { font-weight: 400; color: var(--quiet); }
-td { overflow-wrap: anywhere; min-width: 4.5rem; }
+td { overflow-wrap: anywhere; min-width: 5rem; }
 dl.words { display: grid; grid-template-columns: 8.5rem 1fr; gap: .3rem 1rem; margin: 0; }
 dl.words dt { font-weight: 700; } dl.words dd { margin: 0; }
 footer { margin-top: 2.5rem; padding-bottom: 2rem; font-size: .88rem; color: var(--quiet); }
 @media (max-width: 40rem) {
   header, main, footer { padding-left: .8rem; padding-right: .8rem; }
   h1 { font-size: 1.35rem; }
+  .plate { grid-template-columns: repeat(2, 1fr); }
   .verdict li, dl.words { grid-template-columns: 1fr; }
   dl.words dd { margin-bottom: .4rem; }
 }

@@ -146,7 +146,12 @@ function fitTable({ predictor }: StudyResult): TableSpec {
     caption: 'The regression',
     head: [],
     rows: [
-      ['form', form === 'linear' ? 'z⁺ = A z + B u' : 'z⁺ = A z + B u + Σ uᵢ Nᵢ z'],
+      [
+        'form',
+        form === 'linear'
+          ? 'z[k+1] = A z[k] + B u[k]'
+          : 'z[k+1] = A z[k] + B u[k] + sum over i of u_i[k] N_i z[k]',
+      ],
       ['lifted functions', `${lifting.nz}: ${families.join(', ')}`],
       ['left out as duplicates', dropped.length > 0 ? dropped.join(', ') : NONE],
       ['route', ROUTES[fit.route]],
