@@ -211,9 +211,16 @@ export const CASES: readonly Case[] = [
   {
     code: 'ill-conditioned-regression',
     fine: fitted({ digitsLost: 8 }),
-    beyond: fitted({ digitsLost: 13.5 }),
+    beyond: fitted({ digitsLost: 13.1 }),
     severity: 'error',
-    value: 13.5,
+    value: 13.1,
+  },
+  {
+    code: 'ill-conditioned-regression',
+    fine: fitted({ digitsLost: 8 }),
+    beyond: fitted({ digitsLost: 13 }),
+    severity: 'warning',
+    value: 13,
   },
   {
     code: 'rank-deficient',
@@ -253,9 +260,9 @@ export const CASES: readonly Case[] = [
   {
     code: 'input-range-not-used',
     fine: data(states(1), (k) => 1.6 * rough(k)),
-    beyond: data(states(1), (k) => (k % 5 === 0 ? 1.2 : -0.3)),
+    beyond: data(states(1), (k) => [-1.2, 0, 1.5][k % 3]),
     severity: 'warning',
-    value: 25,
+    value: 45,
     unit: '%',
   },
   {
@@ -275,9 +282,9 @@ export const CASES: readonly Case[] = [
   {
     code: 'few-samples',
     fine: fitted({ samples: 330, regressors: 33, rank: 33 }),
-    beyond: fitted({ samples: 165, regressors: 33, rank: 33 }),
+    beyond: fitted({ samples: 313.5, regressors: 33, rank: 33 }),
     severity: 'warning',
-    value: 5,
+    value: 9.5,
   },
   {
     code: 'few-samples',
@@ -318,6 +325,20 @@ export const CASES: readonly Case[] = [
     beyond: qp({ condition: Number.POSITIVE_INFINITY }),
     severity: 'error',
     value: Number.POSITIVE_INFINITY,
+  },
+  {
+    code: 'ill-conditioned-hessian',
+    fine: qp({ condition: 1e6 }),
+    beyond: qp({ condition: 1e12 }),
+    severity: 'warning',
+    value: 1e12,
+  },
+  {
+    code: 'ill-conditioned-hessian',
+    fine: qp({ condition: 1e6 }),
+    beyond: qp({ condition: 1.1e12 }),
+    severity: 'error',
+    value: 1.1e12,
   },
   {
     code: 'terminal-weight-left-out',

@@ -1,10 +1,11 @@
 import { describe, expect, it } from 'vitest';
+import { measureExcitation } from '../../src/data/coverage.ts';
 import { withUnit } from '../../src/findings/figures.ts';
 import { checkCautions, findCautions } from '../../src/findings/findCautions.ts';
 import { STANDING_HAZARDS } from '../../src/findings/hazards.ts';
 import { CAUTION_RULES } from '../../src/findings/table.ts';
 import { CASES, COUNTED, LOST, STANDING } from './cases.ts';
-import { all, type Change, infeasible, limit, solves } from './changes.ts';
+import { all, type Change, data, infeasible, limit, rough, solves, states } from './changes.ts';
 import { pendulum, smallResult } from './smallResult.ts';
 
 describe('the table of cautions', () => {
@@ -85,6 +86,21 @@ describe('the table of cautions', () => {
     const [solve] = findCautions(solves(3, infeasible(3, 'held'))(smallResult()));
     expect(solve.sentence).toContain('3 solves of 40 did not end at an optimum (3 infeasible)');
     expect(solve.sentence).toContain('the last input, held, 3 times');
+  });
+
+  it('inputs count as weakly exciting exactly when the condition of their last values passes 1000 (defining equation: measured apart)', () => {
+    // A slow wave with a little roughness: the less of it, the worse the condition.
+    const seen = { under: 0, over: 0 };
+    for (let share = 0.002; share < 0.02; share *= 1.03) {
+      const changed = data(states(1), (k) => Math.sin(k / 40) + share * rough(k))(smallResult());
+      const { lagCondition } = measureExcitation(changed.dataset);
+      const speaks = findCautions(changed).some(({ code }) => code === 'weak-excitation');
+      expect(speaks).toBe(lagCondition > 1000);
+      if (lagCondition > 900 && lagCondition <= 1000) seen.under++;
+      if (lagCondition > 1000 && lagCondition < 1100) seen.over++;
+    }
+    expect(seen.under).toBeGreaterThan(0);
+    expect(seen.over).toBeGreaterThan(0);
   });
 
   it('a study without any loop is judged by what there is', () => {

@@ -115,7 +115,7 @@ function makeSmallResult(): StudyResult {
     inputLimits: { torque: { min: -2.5, max: 3 } },
     rateLimits: {},
     outputLimits: [
-      { output: 'height', min: Number.NEGATIVE_INFINITY, max: 0.15, hard: false, weight: 1e4, fromStep: 1 },
+      { output: 'height', min: Number.NEGATIVE_INFINITY, max: 0.1, hard: false, weight: 1e4, fromStep: 1 },
       { output: 'angle', min: -0.9, max: 0.9, hard: true, weight: 1, fromStep: 3 },
     ],
   };
@@ -201,7 +201,7 @@ function calmReport(): LoopReport {
   };
   return {
     limits: [
-      { kind: 'output', channel: 'height', unit: 'm', min: Number.NEGATIVE_INFINITY, max: 0.15, ...limit },
+      { kind: 'output', channel: 'height', unit: 'm', min: Number.NEGATIVE_INFINITY, max: 0.1, ...limit },
       { kind: 'output', channel: 'angle', unit: 'rad', min: -0.9, max: 0.9, ...limit },
       { kind: 'input', channel: 'torque', unit: 'N m', min: -2.5, max: 3, ...limit },
       { kind: 'rate', channel: 'torque', unit: 'N m/s', min: -40, max: 40, ...limit },
