@@ -51,7 +51,7 @@ export const PREDICTOR_RULES: readonly CautionRule[] = [
     inOrder: (ratio, { short }) => !short || ratio >= THRESHOLDS.ratioToFloor,
     severity: 'note',
     sentence: (figure) =>
-      `The error is ${figure} times the least that any constant matrices reach with these functions: refitting them gains nothing. What is left is an effect of the input that depends on the state, or a function that is missing.`,
+      `The error is ${figure} times that of regressing each step ahead directly, which is the best that constant matrices can do with these functions: refitting gains nothing. What is left is an effect of the input that depends on the state, or a function that is missing.`,
     whatToDo:
       "Offer functions from the physics in the plant's file, or shorten the horizon; a larger dictionary of the same kind will hardly help.",
   }),

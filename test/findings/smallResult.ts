@@ -37,7 +37,8 @@ export const pendulum: Plant = {
     -(gravity / length) * Math.sin(x[0]) - damping * x[1] + gain * u[0],
   ],
   physics: [{ name: 'weight', of: (x) => Math.sin(x[0]) }],
-  operatingPoint: { x: [0, 0], u: [0] },
+  // Not at rest, so that an input that acts before the first decision shows in it.
+  operatingPoint: { x: [0, 0], u: [0.6] },
   hazards: ['The arm moves fast and stores energy when it is up.', 'The motor may start without warning.'],
 };
 
