@@ -29,6 +29,11 @@ export interface Iterate {
   readonly leave: Uint8Array;
   /** `Q[W, W]⁻¹ Q[W, row]` of the row that was to join last. */
   readonly direction: Float64Array;
+  /** Multipliers tried on the way from `factor.held` to `factor.mu`. */
+  readonly trial: Float64Array;
+  /** Dual objective at `factor.held`; −Infinity when that is not known. */
+  heldObjective: number;
+  /** The row that was to join last, or the worst of the block. */
   entering: number;
   enteringSide: number;
   /** ‖x‖∞. */
@@ -63,6 +68,8 @@ export function createIterate(qp: PreparedQp, factor: WorkingFactor): Iterate {
     gaps: new Float64Array(m),
     leave: new Uint8Array(room),
     direction: new Float64Array(room),
+    trial: new Float64Array(room),
+    heldObjective: Number.NEGATIVE_INFINITY,
     entering: -1,
     enteringSide: 0,
     size: 0,

@@ -7,6 +7,8 @@ import type { QpResult, QpStatus } from './qp.ts';
 export const ACCEPTED = 1e-10;
 /** Residuals above this are refined before a solve ends. */
 const POLISHED = 1e-13;
+/** The fast route's answer is taken when it is as good as this, else the careful route has the last word. */
+const GOOD = 5e-13;
 /** A row counts as violated beyond this share of the size of its terms. */
 const FEASIBLE = 2.5e-13;
 /** Violated rows above this share of the worst join the working set together. */
@@ -28,25 +30,21 @@ export function rightSide({ qp, x0, lower, upper }: Iterate, row: number, side: 
 }
 
 /**
- * Rounds of: multipliers on the working set; rows with a wrong sign leave; the most violated rows join. Every round that keeps
- * all signs right must raise the dual objective; once a block of rows fails to, rows join one by one with step lengths,
- * which raises it always, so that no working set can come twice.
+ * Rounds of: the multipliers of the working set approach those of its own minimum, rows whose multiplier would change sign leave
+ * on the way; then the most violated rows join. Every change raises the dual objective, so that no working set can come twice; one that
+ * does not is rounding, and some of these are left to the careful route (`failed`).
  */
 export function solveInBlocks(it: Iterate, limit: number, result: QpResult): QpStatus {
   const { qp, factor } = it;
-  let single = false;
   let best = Number.NEGATIVE_INFINITY;
   let stalls = 0;
+  it.heldObjective = Number.NEGATIVE_INFINITY;
   for (let round = 0; round < limit; round++) {
     result.iterations++;
     factor.solve();
-    if (dropWrongSigns(it)) continue;
-    const objective = factor.objective();
-    if (!(objective > best)) {
-      if (single && ++stalls > 10) return 'failed';
-      single = true;
-    }
-    best = Math.max(best, objective);
+    if (!approach(it)) continue;
+    if (!(it.heldObjective > best) && ++stalls > 10) return 'failed';
+    best = it.heldObjective;
     updatePrimal(it);
     multiplyRows(it.values, qp.G, qp.m, qp.n, qp.groupFrom, qp.groupTo, it.x);
     const count = findViolated(it);
@@ -56,10 +54,10 @@ export function solveInBlocks(it: Iterate, limit: number, result: QpResult): QpS
         refine(it, POLISHED);
         if (hasWrongSign(it) || findViolated(it) > 0) return 'failed';
       }
-      return it.residuals.relative <= ACCEPTED ? 'optimal' : 'failed';
+      return it.residuals.relative <= GOOD ? 'optimal' : 'failed';
     }
     const worst = findWorst(it, count);
-    if (!single && joinBlock(it, count, worst)) continue;
+    if (joinBlock(it, count, worst)) continue;
     const outcome = joinOne(it, it.candidates[worst], it.gaps[worst]);
     if (outcome === 'infeasible') {
       return findCertificate(it, null, result.certificate) ? 'infeasible' : 'failed';
@@ -70,21 +68,95 @@ export function solveInBlocks(it: Iterate, limit: number, result: QpResult): QpS
   return 'iteration-limit';
 }
 
-/** Takes all rows with a wrong-signed multiplier out of the working set. */
-function dropWrongSigns({ factor, side, equal, leave }: Iterate): boolean {
-  const { k, rows, mu } = factor;
+/**
+ * Moves the held multipliers towards the solution `mu` of the working set as far as the dual objective allows; rows whose
+ * multiplier would change sign stop at 0 and leave. True when `mu` itself is reached.
+ */
+function approach(it: Iterate): boolean {
+  const { factor, side, equal, trial } = it;
+  const { k, rows, mu, held } = factor;
+  let wrong = 0;
+  let unmoved = 0;
+  let blocking = 1;
+  for (let j = 0; j < k; j++) {
+    const i = rows[j];
+    if (side[i] * mu[j] >= 0 || equal[i] === 1) continue;
+    wrong++;
+    const from = Math.abs(held[j]);
+    if (from === 0) unmoved++;
+    else blocking = Math.min(blocking, from / (from + Math.abs(mu[j])));
+  }
+  const objective = factor.objective();
+  if (wrong === 0) {
+    for (let j = 0; j < k; j++) held[j] = mu[j];
+    it.heldObjective = objective;
+    return true;
+  }
+  if (it.heldObjective === Number.NEGATIVE_INFINITY) {
+    leaveWhere(it, mu);
+    return false;
+  }
+  for (let share = 1; share > 0.2; share *= 0.5) {
+    clip(trial, it, share);
+    const reached = objective - factor.shortfall(trial);
+    if (reached > it.heldObjective) {
+      for (let j = 0; j < k; j++) held[j] = trial[j];
+      it.heldObjective = reached;
+      leaveWhere(it, mu);
+      return false;
+    }
+  }
+  if (unmoved === 0) {
+    // Up to the first row that stops, the way to the minimum of the working set only rises.
+    clip(trial, it, blocking * (1 + 1e-15));
+    it.heldObjective = objective - factor.shortfall(trial);
+    for (let j = 0; j < k; j++) held[j] = trial[j];
+    leaveWhere(it, mu);
+  } else leaveUnmoved(it);
+  return false;
+}
+
+/** `trial = held + share (mu − held)`, wrong signs set to 0. */
+function clip(trial: Float64Array, { factor, side, equal }: Iterate, share: number): void {
+  const { k, rows, mu, held } = factor;
+  for (let j = 0; j < k; j++) {
+    const value = held[j] + share * (mu[j] - held[j]);
+    trial[j] = equal[rows[j]] === 0 && side[rows[j]] * value < 0 ? 0 : value;
+  }
+}
+
+/** Rows leave that are held at 0 and whose multiplier goes the wrong way. */
+function leaveWhere(it: Iterate, mu: Float64Array): void {
+  const { factor, side, equal, leave } = it;
+  const { k, rows, held } = factor;
+  const start = it.heldObjective === Number.NEGATIVE_INFINITY;
+  for (let j = 0; j < k; j++) {
+    const i = rows[j];
+    leave[j] = equal[i] === 0 && side[i] * mu[j] < 0 && (start || held[j] === 0) ? 1 : 0;
+    if (leave[j] === 1) side[i] = 0;
+  }
+  factor.removeMarked(leave);
+}
+
+/**
+ * Rows of the last block leave that have no multiplier yet and that the others push the wrong way; when these do so to the worst row
+ * alone, all but the worst leave: alone it rises.
+ */
+function leaveUnmoved(it: Iterate): void {
+  const { factor, side, equal, leave } = it;
+  const { k, rows, mu, held } = factor;
   let count = 0;
   for (let j = 0; j < k; j++) {
     const i = rows[j];
-    leave[j] = 0;
-    if (equal[i] === 0 && side[i] * mu[j] < 0) {
-      leave[j] = 1;
-      side[i] = 0;
-      count++;
-    }
+    leave[j] = equal[i] === 0 && held[j] === 0 && side[i] * mu[j] < 0 && i !== it.entering ? 1 : 0;
+    count += leave[j];
   }
-  if (count > 0) factor.removeMarked(leave);
-  return count > 0;
+  for (let j = 0; j < k; j++) {
+    const i = rows[j];
+    if (count === 0 && equal[i] === 0 && held[j] === 0 && i !== it.entering) leave[j] = 1;
+    if (leave[j] === 1) side[i] = 0;
+  }
+  factor.removeMarked(leave);
 }
 
 export function hasWrongSign({ factor, side, equal }: Iterate): boolean {
@@ -131,6 +203,7 @@ function joinBlock(it: Iterate, count: number, worst: number): boolean {
   const { factor, candidates, gaps, side } = it;
   const least = BLOCK_SHARE * Math.abs(gaps[worst]);
   if (!joinPlain(it, candidates[worst], gaps[worst])) return false;
+  it.entering = candidates[worst];
   for (let c = 0; c < count && !factor.full; c++) {
     if (c !== worst && Math.abs(gaps[c]) >= least) joinPlain(it, candidates[c], gaps[c]);
   }
@@ -157,6 +230,7 @@ function joinOne(it: Iterate, row: number, gapSigned: number): Joined {
   const sign = gapSigned > 0 ? 1 : -1;
   const { mu } = factor;
   let gap = Math.abs(gapSigned);
+  it.heldObjective = Number.NEGATIVE_INFINITY;
   for (;;) {
     const pivot = factor.project(direction, row);
     let most = 1;

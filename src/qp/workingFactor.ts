@@ -15,6 +15,8 @@ export class WorkingFactor {
   readonly c: Float64Array;
   /** Solution of `Q[W, W] mu = c` after `solve`. */
   readonly mu: Float64Array;
+  /** Multipliers with right signs from which `mu` is approached; 0 for a row that has just joined. */
+  readonly held: Float64Array;
   /** Removals since the factor was last built from Q. */
   removals = 0;
   readonly #Q: Float64Array;
@@ -35,6 +37,7 @@ export class WorkingFactor {
     this.place = new Int32Array(m).fill(-1);
     this.c = new Float64Array(capacity);
     this.mu = new Float64Array(capacity);
+    this.held = new Float64Array(capacity);
     this.#L = new Float64Array(capacity * capacity);
     this.#D = new Float64Array(capacity);
     this.#y = new Float64Array(capacity);
@@ -65,6 +68,7 @@ export class WorkingFactor {
     this.rows[k] = row;
     this.place[row] = k;
     this.c[k] = c;
+    this.held[k] = 0;
     this.#y[k] = c - dot(this.#L, k * this.#ld, this.#y, 0, k);
     this.k = k + 1;
     return pivot;
@@ -81,6 +85,7 @@ export class WorkingFactor {
       this.rows[i] = row;
       this.place[row] = i;
       this.c[i] = this.c[i + 1];
+      this.held[i] = this.held[i + 1];
     }
     this.forward(j);
   }
@@ -122,6 +127,7 @@ export class WorkingFactor {
       this.rows[to] = row;
       this.place[row] = to;
       this.c[to] = this.c[i];
+      this.held[to] = this.held[i];
       to++;
     }
     this.k = to;
@@ -143,6 +149,12 @@ export class WorkingFactor {
     let sum = 0;
     for (let i = 0; i < this.k; i++) sum += (this.#y[i] * this.#y[i]) / this.#D[i];
     return 0.5 * sum;
+  }
+
+  /** `½ (trial − mu)ᵀ Q[W, W] (trial − mu)`: by how much `trial` falls short of `objective`. Cost ½ k². */
+  shortfall(trial: Float64Array): number {
+    for (let i = 0; i < this.k; i++) this.#p[i] = trial[i] - this.mu[i];
+    return 0.5 * squareNorm(this.#p, this.#L, this.#D, this.k, this.#ld);
   }
 
   /** `out = Q[W, W]⁻¹ right` for another right side; `out` may be `right`. */
@@ -222,6 +234,18 @@ function closeGap(
     D[i - 1] = raised;
     alpha *= old / raised;
   }
+}
+
+/** `vᵀ L D Lᵀ v`; v is overwritten. */
+function squareNorm(v: Float64Array, L: Float64Array, D: Float64Array, k: number, ld: number): number {
+  let sum = 0;
+  for (let i = 0; i < k; i++) {
+    const at = i * ld;
+    const value = v[i];
+    for (let t = 0; t < i; t++) v[t] += value * L[at + t];
+  }
+  for (let i = 0; i < k; i++) sum += v[i] * v[i] * D[i];
+  return sum;
 }
 
 /** `out = L⁻ᵀ D⁻¹ y`. */
