@@ -106,7 +106,7 @@ describe('tracking figures, closed form', () => {
   });
 
   it('overshoot is a share of the step, also of a step down', () => {
-    const r = Array.from({ length: 61 }, (_, k) => (k >= 20 ? -0.5 : 0));
+    const r: number[] = Array.from({ length: 61 }, (_, k) => (k >= 20 ? -0.5 : 0));
     const y = r.slice();
     y[25] = -0.6;
     const [report] = assessLoop(recordOf(y, r, zeros(60)), problem, plant).tracking;
