@@ -97,8 +97,65 @@ describe('the C header', () => {
         }
         expect(parsed.get(`${SMALL}_sample_time`)).toEqual([result.sampleTime]);
       }),
-      { numRuns: 25 },
+      { numRuns: 12 },
     );
+  });
+
+  it('gives each name the numbers of the record that it stands for (relation: by a list written apart)', () => {
+    const { design, predictor, sampleTime } = smallResult();
+    const { problem, qp } = design;
+    const { scaling, lifting } = predictor;
+    const parsed = parseHeader(writeCHeader(smallResult(), OPTIONS));
+    const due: Record<string, ArrayLike<number>> = {
+      sample_time: [sampleTime],
+      disturbance_gain: [problem.disturbanceGain],
+      A: predictor.A.data,
+      B: predictor.B.data,
+      C: predictor.C.data,
+      H: qp.H.data,
+      F: qp.F.data,
+      G: qp.G.data,
+      E: qp.E.data,
+      Wl: qp.Wl,
+      Wu: qp.Wu,
+      softness: qp.softness,
+      K: design.K.data,
+      P: design.P.data,
+      Tz: design.Tz.data,
+      Tu: design.Tu.data,
+      x_centre: scaling.x.centre,
+      x_half: scaling.x.half,
+      u_centre: scaling.u.centre,
+      u_half: scaling.u.half,
+      y_centre: scaling.y.centre,
+      y_half: scaling.y.half,
+      u_min: problem.inputLimits.min,
+      u_max: problem.inputLimits.max,
+      u_rate: problem.rateLimits,
+      Q: problem.Q.data,
+      S: problem.S.data,
+      R: problem.R.data,
+      blocks: qp.blocks,
+      row_kind: qp.rows.map(({ kind }) => ['input', 'rate', 'output'].indexOf(kind)),
+      row_channel: qp.rows.map(({ channel }) => channel),
+      row_step: qp.rows.map(({ step }) => step),
+    };
+    lifting.parts.forEach(({ keep, constants }, i) => {
+      if (keep.length === 0) return;
+      due[`part${i + 1}_keep`] = keep;
+      for (const [key, value] of Object.entries(constants)) {
+        const flat = [value].flat(3) as (number | string)[];
+        if (flat.every((entry) => typeof entry === 'number')) due[`part${i + 1}_${key}`] = flat as number[];
+      }
+    });
+    expect([...parsed.keys()].sort()).toEqual(
+      Object.keys(due)
+        .map((name) => `${SMALL}_${name}`)
+        .sort(),
+    );
+    for (const [name, values] of Object.entries(due)) {
+      expect(parsed.get(`${SMALL}_${name}`)?.map(bitsOf), name).toEqual(Array.from(values, bitsOf));
+    }
   });
 
   it.each([
@@ -134,7 +191,9 @@ describe('the C header', () => {
 
   it('no line passes the 4095 characters, no name the 63, that C99 5.2.4.1 promises', () => {
     const name = 'a very long name of a study indeed, and then some more';
-    const text = writeCHeader(withNumbers([-1.2345678901234567e-101]), { ...OPTIONS, name });
+    const result = smallResult();
+    const wide = { rows: 2, cols: 400, data: new Float64Array(800).fill(-1.2345678901234567e-101) };
+    const text = writeCHeader({ ...result, design: { ...result.design, Tz: wide } }, { ...OPTIONS, name });
     for (const line of text.split('\n')) expect(line.length).toBeLessThan(4095);
     for (const [word] of text.matchAll(/\b(?:LIFTWRIGHT|liftwright)_\w+/g))
       expect(word.length).toBeLessThanOrEqual(63);

@@ -116,6 +116,39 @@ describe('the exported folder', () => {
     }
   });
 
+  it('each matrix file holds the matrix of its name (relation: by a list written apart)', () => {
+    const { design, predictor } = smallResult();
+    const { qp, K, P, Tz, Tu } = design;
+    const { A, B, C } = predictor;
+    const due = {
+      A,
+      B,
+      C,
+      H: qp.H,
+      F: qp.F,
+      G: qp.G,
+      E: qp.E,
+      Wl: qp.Wl,
+      Wu: qp.Wu,
+      softness: qp.softness,
+      K,
+      P,
+      Tz,
+      Tu,
+    };
+    const names = [...files.keys()].flatMap((path) => /^matrices\/(\w+)\.mtx$/.exec(path)?.[1] ?? []);
+    expect(names.sort()).toEqual(Object.keys(due).sort());
+    for (const [name, values] of Object.entries(due)) {
+      const { rows, cols, data } =
+        values instanceof Float64Array ? { rows: values.length, cols: 1, data: values } : values;
+      expect([matrix(name).rows, matrix(name).cols], name).toEqual([rows, cols]);
+      expect(
+        Buffer.compare(new Uint8Array(matrix(name).data.buffer), new Uint8Array(data.slice().buffer)),
+        name,
+      ).toBe(0);
+    }
+  });
+
   it('cautions that are open stand in the README with what to do', () => {
     const { design } = smallResult();
     const readme = filesOf({
