@@ -1,6 +1,6 @@
 import { createCanvas, GlobalFonts } from '@napi-rs/canvas';
 import { Chart, registerables } from 'chart.js';
-import { chartConfig } from './charts/drawing.ts';
+import { chartConfig, PAINTERS } from './charts/drawing.ts';
 import type { ChartSpec } from './spec.ts';
 import { COLOURS, TEXT } from './style.ts';
 
@@ -65,19 +65,23 @@ export function drawPng(spec: ChartSpec, fonts: ChartFonts): Uint8Array {
   registerFonts(fonts);
   const canvas = createCanvas(PNG_WIDTH, spec.height);
   canvas.getContext('2d').lang = 'en';
-  const config = chartConfig(spellOut(spec), {
-    width: PNG_WIDTH,
-    title: true,
-    fontFamily: FAMILY,
-    colours: {},
-    paper: COLOURS.paper.light,
-    ink: COLOURS.ink.light,
-    quiet: COLOURS.quiet.light,
-    grid: COLOURS.grid.light,
-    responsive: false,
-    ratio: RATIO,
-    text: TEXT,
-  });
+  const config = chartConfig(
+    spellOut(spec),
+    {
+      width: PNG_WIDTH,
+      title: true,
+      fontFamily: FAMILY,
+      colours: {},
+      paper: COLOURS.paper.light,
+      ink: COLOURS.ink.light,
+      quiet: COLOURS.quiet.light,
+      grid: COLOURS.grid.light,
+      responsive: false,
+      ratio: RATIO,
+      text: TEXT,
+    },
+    PAINTERS,
+  );
   const chart = new Chart(canvas as unknown as HTMLCanvasElement, config);
   const png = canvas.toBuffer('image/png');
   chart.destroy();

@@ -73,6 +73,7 @@ export interface SeriesSpec {
   readonly backgroundColor: string;
   readonly borderWidth: number;
   readonly borderDash: readonly number[];
+  readonly borderJoinStyle?: 'round';
   readonly pointStyle: Marker;
   readonly pointRadius: number | readonly number[];
   readonly pointBorderColor?: string;

@@ -5,7 +5,13 @@ import type { StudyResult } from '../../src/findings/studyResult.ts';
 import { describeCharts } from '../../src/report/charts/all.ts';
 import { closedLoopChart } from '../../src/report/charts/closedLoop.ts';
 import { coverageCharts } from '../../src/report/charts/coverage.ts';
-import { breakLines, type ChartView, chartConfig, drawingSource } from '../../src/report/charts/drawing.ts';
+import {
+  breakLines,
+  type ChartView,
+  chartConfig,
+  drawingSource,
+  PAINTERS,
+} from '../../src/report/charts/drawing.ts';
 import { excitationChart } from '../../src/report/charts/excitation.ts';
 import { findExcursions } from '../../src/report/charts/loopSignals.ts';
 import { rivalsChart } from '../../src/report/charts/rivals.ts';
@@ -215,7 +221,7 @@ describe('the other charts show what their records say', () => {
 
   it('a unit of the spectrum is as long upwards as across', () => {
     const canvas = createCanvas(800, 520) as unknown as HTMLCanvasElement;
-    const chart = new Chart(canvas, chartConfig(spectrumChart(sampleResult()), view));
+    const chart = new Chart(canvas, chartConfig(spectrumChart(sampleResult()), view, PAINTERS));
     const { x, y } = chart.scales;
     const across = x.getPixelForValue(1) - x.getPixelForValue(0);
     const up = y.getPixelForValue(0) - y.getPixelForValue(1);
@@ -267,13 +273,13 @@ function luminance(hex: string): number {
 }
 
 describe('series are told apart without colour', () => {
-  it('no two named lines of a chart share dash and marker, nor do two kinds of points share marker and lightness', () => {
+  it('no two named series of one panel share line, dash and marker', () => {
     for (const { name, series } of describeCharts(sampleResult())) {
       const looks = series
         .filter(({ unnamed }) => !unnamed)
-        .map(({ showLine, borderDash, pointStyle, borderWidth, yAxisID }) =>
+        .map(({ showLine, borderDash, pointStyle, yAxisID }) =>
           // The input has its own panel: there is nothing else to confuse it with.
-          JSON.stringify([showLine, borderDash, pointStyle, borderWidth, yAxisID.charAt(0)]),
+          JSON.stringify([showLine, borderDash, pointStyle, yAxisID.charAt(0)]),
         );
       expect(new Set(looks).size, name).toBe(looks.length);
     }
@@ -308,9 +314,11 @@ describe('series are told apart without colour', () => {
 
 describe('the drawing code', () => {
   it('as text, without its module, makes the same configuration as in its module', () => {
-    const again = new Function(`${drawingSource()}; return chartConfig;`)() as typeof chartConfig;
+    const again = new Function(
+      `${drawingSource()}; return (spec, view) => chartConfig(spec, view, painters);`,
+    )();
     for (const spec of describeCharts(sampleResult())) {
-      expect(JSON.stringify(again(spec, view))).toBe(JSON.stringify(chartConfig(spec, view)));
+      expect(JSON.stringify(again(spec, view))).toBe(JSON.stringify(chartConfig(spec, view, PAINTERS)));
     }
   });
 
@@ -318,7 +326,7 @@ describe('the drawing code', () => {
     const spec = trustChart(sampleResult());
     const before = JSON.stringify(spec);
     const dark = { ...view, colours: { [COLOURS.lifted.light]: COLOURS.lifted.dark } };
-    const text = JSON.stringify(chartConfig(spec, dark));
+    const text = JSON.stringify(chartConfig(spec, dark, PAINTERS));
     expect(text).toContain(COLOURS.lifted.dark);
     expect(text).not.toContain(`"${COLOURS.lifted.light}"`);
     expect(JSON.stringify(spec)).toBe(before);

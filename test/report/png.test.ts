@@ -41,9 +41,10 @@ describe('charts as PNG', () => {
     }
   });
 
-  it('nothing dark stands in the title’s place when there is no title: the count above counts text', async () => {
-    const spec = { ...spectrumChart(sampleResult()), title: '' };
-    expect(await countDark(drawPng(spec, fonts), 14)).toBe(0);
+  it('a title of wide letters is darker than one of as many narrow letters: what is dark is text', async () => {
+    const spec = spectrumChart(sampleResult());
+    const dark = (title: string) => countDark(drawPng({ ...spec, title }, fonts), 60);
+    expect((await dark('M'.repeat(30))) - (await dark('i'.repeat(30)))).toBeGreaterThan(3000);
   });
 
   it('the same record gives the same bytes', () => {

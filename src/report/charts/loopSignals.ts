@@ -39,6 +39,7 @@ export function shownOutputs(result: StudyResult): { readonly output: OutputChan
   return told.length > 0 ? told : all;
 }
 
+/** Joined from sample to sample: a step then takes one sample, which does not show, and a sine is smooth. */
 export function referenceSeries(
   record: LoopRecord,
   at: number,
@@ -47,7 +48,7 @@ export function referenceSeries(
 ): SeriesSpec {
   const values = column(record.reference, record.ny, at).subarray(0, record.steps + 1);
   const points = thinSeries(timesOf(record, values.length), values);
-  return lineSeries(REFERENCE_STYLE, points, { x: 'x', y: axis }, null, { stepped: 'before', ...extras });
+  return lineSeries(REFERENCE_STYLE, points, { x: 'x', y: axis }, null, extras);
 }
 
 /** One output between the samples too. */

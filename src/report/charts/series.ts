@@ -26,6 +26,7 @@ export function lineSeries(
     backgroundColor: style.colour,
     borderWidth: style.width,
     borderDash: style.dash,
+    borderJoinStyle: 'round',
     pointStyle: markers ? style.marker : false,
     pointRadius: radius,
     ...extras,

@@ -58,7 +58,7 @@ function drawAll(printing) {
       responsive: false,
       ratio: printing ? 2 : Math.max(1, devicePixelRatio),
     };
-    drawn.set(spec.name, new Chart(canvas, chartConfig(spec, view)));
+    drawn.set(spec.name, new Chart(canvas, chartConfig(spec, view, painters)));
   });
 }
 const draw = () => drawAll(print.matches);

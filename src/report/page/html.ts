@@ -21,6 +21,9 @@ export function scriptText(code: string): string {
   return code.replace(/<\/(script)/gi, '<\\/$1').replaceAll('<!--', '<\\!--');
 }
 
+/** What stands in a table for a figure that does not exist. */
+export const NONE = 'none';
+
 /** A table as it is described; all text is escaped here. */
 export interface TableSpec {
   readonly caption: string;

@@ -129,7 +129,10 @@ function aboutAcceptance({ acceptance }: StudyResult): VerdictLine[] {
       {
         standing: 'good',
         about: 'Acceptance',
-        sentence: `All ${plural(acceptance.length, 'acceptance limit')} met.`,
+        sentence:
+          acceptance.length === 1
+            ? 'The acceptance limit of the study is met.'
+            : `All ${acceptance.length} acceptance limits of the study are met.`,
       },
     ];
   }
