@@ -10,14 +10,15 @@ export interface LiftedObserver {
   readonly d: Float64Array;
   /** Takes a measurement (nx, physical); false, with nothing changed, when its lift is not finite. */
   readonly measure: (x: ArrayLike<number>) => boolean;
-  /** Tells which input (nu, scaled) acts from the last measurement to the next one. */
+  /** Tells which input (nu, scaled) acts from this sample to the next one. */
   readonly act: (u: Float64Array) => void;
   readonly reset: () => void;
 }
 
 /**
  * `d ← d + gain (psi(x_k) − A psi(x_{k−1}) − B u_{k−1} − d)`: a first-order filter on the WHOLE lifted one-step residual, so that at
- * rest `z = A z + B u + d` holds exactly and a tracking controller without level weight leaves no offset.
+ * rest `z = A z + B u + d` holds exactly and a tracking controller without level weight leaves no offset. After a measurement
+ * that was not finite there is no one-step residual: d stays until two good ones follow each other.
  *
  * @param gain in [0, 1]; 0 keeps d = 0.
  */
@@ -31,6 +32,7 @@ export function createObserver(predictor: Predictor, bound: BoundLifting, gain: 
   const expected = new Float64Array(nz);
   const effect = new Float64Array(nz);
   const scaled = new Float64Array(nx);
+  let measured = false;
   let expecting = false;
   return {
     z,
@@ -38,15 +40,16 @@ export function createObserver(predictor: Predictor, bound: BoundLifting, gain: 
     measure(x) {
       for (let i = 0; i < nx; i++) scaled[i] = (x[i] - scaling.x.centre[i]) / scaling.x.half[i];
       bound.liftInto(lifted, scaled);
-      const fine = lifted.every(Number.isFinite);
-      if (fine) {
+      measured = lifted.every(Number.isFinite);
+      if (measured) {
         if (expecting) for (let i = 0; i < nz; i++) d[i] += gain * (lifted[i] - expected[i] - d[i]);
         z.set(lifted);
       }
       expecting = false;
-      return fine;
+      return measured;
     },
     act(u) {
+      if (!measured) return;
       applyInto(expected, A, z);
       applyInto(effect, B, u);
       for (let i = 0; i < nz; i++) expected[i] += effect[i];
@@ -55,6 +58,7 @@ export function createObserver(predictor: Predictor, bound: BoundLifting, gain: 
     reset() {
       z.fill(0);
       d.fill(0);
+      measured = false;
       expecting = false;
     },
   };
