@@ -1,7 +1,8 @@
 import { decomposeSymmetric } from '../numerics/eigen.ts';
-import { identity, type Matrix, multiply, transpose, zeros } from '../numerics/matrix.ts';
-import { stackPrediction } from './prediction.ts';
-import type { CondensedQp, ControlProblem, RowLabel } from './problem.ts';
+import { addScaled, identity, type Matrix, multiply, transpose, zeros } from '../numerics/matrix.ts';
+import { limitRows } from './limitRows.ts';
+import { type StackedPrediction, stackPrediction } from './prediction.ts';
+import type { CondensedQp, ControlProblem } from './problem.ts';
 import type { TargetMaps } from './target.ts';
 
 /**
@@ -56,14 +57,13 @@ export function condenseQp(problem: ControlProblem, P: Matrix | null, target: Ta
 }
 
 type ThetaLayout = CondensedQp['theta'];
-type Stacked = ReturnType<typeof stackPrediction>;
 
 /** `Σ_{k=1}^{last} ‖y_k − r_k‖²_Q`. */
 function addTracking(
   H: Matrix,
   F: Matrix,
   { Q, predictor }: ControlProblem,
-  { Phi, Gamma, Psi }: Stacked,
+  { Phi, Gamma, Psi }: StackedPrediction,
   theta: ThetaLayout,
   last: number,
 ): void {
@@ -167,7 +167,6 @@ function finalState(A: Matrix, B: Matrix, blocks: readonly number[], N: number) 
   const nz = A.rows;
   const nu = B.cols;
   const gamma = zeros(nz, blocks.length * nu);
-  const sum = zeros(nz, nz);
   let effect = B;
   for (let b = blocks.length - 1; b >= 0; b--) {
     for (let step = 0; step < blocks[b]; step++) {
@@ -175,12 +174,21 @@ function finalState(A: Matrix, B: Matrix, blocks: readonly number[], N: number) 
       effect = multiply(A, effect);
     }
   }
-  let current = identity(nz);
-  for (let step = 0; step < N; step++) {
-    accumulate(sum, 0, current, 1);
-    current = multiply(A, current);
+  return { gamma, ...powerAndSum(A, N) };
+}
+
+/** `A^N` and `Σ_{k<N} Aᵏ` by doubling, in at most four products for each binary digit of N. */
+function powerAndSum(A: Matrix, N: number): { power: Matrix; sum: Matrix } {
+  let power = identity(A.rows);
+  let sum = zeros(A.rows, A.rows);
+  for (const digit of N.toString(2)) {
+    sum = addScaled(1, sum, 1, multiply(power, sum));
+    power = multiply(power, power);
+    if (digit === '0') continue;
+    sum = addScaled(1, sum, 1, power);
+    power = multiply(power, A);
   }
-  return { gamma, power: current, sum };
+  return { power, sum };
 }
 
 /** Adds `factor · M (r_N, d, 1)` to the rows of F from `row` on. */
@@ -202,85 +210,6 @@ function addTargetTerm(
     for (let j = 0; j < nz; j++) F.data[out + theta.d + j] += factor * M.data[at + ny + j];
     F.data[out + theta.one] += factor * M.data[at + ny + nz];
   }
-}
-
-/** The limits as rows `Wl + E θ ≤ G U ≤ Wu + E θ`: input boxes, rates, then outputs. */
-function limitRows(
-  problem: ControlProblem,
-  { Phi, Gamma, Psi }: Stacked,
-  theta: ThetaLayout,
-  ntheta: number,
-) {
-  const { predictor, blocks, horizon: N, inputLimits, rateLimits, outputLimits } = problem;
-  const { scaling, sampleTime } = predictor;
-  const nu = blocks.length === 0 ? 0 : predictor.B.cols;
-  const ny = predictor.C.rows;
-  const nz = predictor.A.rows;
-  const n = blocks.length * nu;
-  const rows: RowLabel[] = [];
-  const lower: number[] = [];
-  const upper: number[] = [];
-  const softness: number[] = [];
-  const starts: number[] = [];
-  let start = 0;
-  for (const length of blocks) {
-    starts.push(start);
-    start += length;
-  }
-  const add = (row: RowLabel, low: number, high: number, soft: number) => {
-    rows.push(row);
-    lower.push(low);
-    upper.push(high);
-    softness.push(soft);
-  };
-  starts.forEach((step) => {
-    for (let channel = 0; channel < nu; channel++) {
-      const scaled = (value: number) => (value - scaling.u.centre[channel]) / scaling.u.half[channel];
-      const [low, high] = [inputLimits.min[channel], inputLimits.max[channel]];
-      add({ kind: 'input', channel, step }, scaled(low), scaled(high), 0);
-    }
-  });
-  starts.forEach((step) => {
-    for (let channel = 0; channel < nu; channel++) {
-      const most = (rateLimits[channel] * sampleTime) / scaling.u.half[channel];
-      if (most < Number.POSITIVE_INFINITY) add({ kind: 'rate', channel, step }, -most, most, 0);
-    }
-  });
-  for (const limit of outputLimits) {
-    const scaled = (value: number) => (value - scaling.y.centre[limit.output]) / scaling.y.half[limit.output];
-    // Cost w e² is ½ e² / softness.
-    const soft = limit.weight === Number.POSITIVE_INFINITY ? 0 : 1 / (2 * limit.weight);
-    for (let step = Math.max(1, limit.fromStep); step <= N; step++) {
-      add({ kind: 'output', channel: limit.output, step }, scaled(limit.min), scaled(limit.max), soft);
-    }
-  }
-
-  const G = zeros(rows.length, n);
-  const E = zeros(rows.length, ntheta);
-  rows.forEach(({ kind, channel, step }, i) => {
-    if (kind === 'output') {
-      const from = (step - 1) * ny + channel;
-      G.data.set(Gamma.data.subarray(from * n, (from + 1) * n), i * n);
-      for (let j = 0; j < nz; j++) {
-        E.data[i * ntheta + theta.z + j] = -Phi.data[from * nz + j];
-        E.data[i * ntheta + theta.d + j] = -Psi.data[from * nz + j];
-      }
-      return;
-    }
-    const block = starts.indexOf(step);
-    G.data[i * n + block * nu + channel] = 1;
-    if (kind === 'input') return;
-    if (block > 0) G.data[i * n + (block - 1) * nu + channel] = -1;
-    else E.data[i * ntheta + theta.uPrev + channel] = 1;
-  });
-  return {
-    G,
-    E,
-    Wl: Float64Array.from(lower),
-    Wu: Float64Array.from(upper),
-    softness: Float64Array.from(softness),
-    rows,
-  };
 }
 
 /** `M[:, col …] += factor · S`. */

@@ -1,5 +1,5 @@
 import { solveSquare } from '../numerics/linearSolve.ts';
-import { block, type Matrix, zeros } from '../numerics/matrix.ts';
+import { block, identity, type Matrix, multiply, transpose, zeros } from '../numerics/matrix.ts';
 import { condenseQp } from './condense.ts';
 import type { ControllerDesign, ControlProblem } from './problem.ts';
 import { findTarget } from './target.ts';
@@ -34,10 +34,10 @@ export function designController(problem: ControlProblem): ControllerDesign {
   };
 }
 
-/** `K` with `u_0 = −K θ` where no limit is active: the first nu rows of `H⁻¹ F`; NaN where H is singular. */
+/** `K` with `u_0 = −K θ` where no limit is active: the first nu rows of `H⁻¹ F`, H being symmetric; NaN where it is singular. */
 function firstMoveGain(H: Matrix, F: Matrix, nu: number): Matrix {
-  const all = solveSquare(H, F);
-  if (all) return block(all, 0, nu, 0, F.cols);
+  const firstColumns = solveSquare(H, block(identity(H.rows), 0, H.rows, 0, nu));
+  if (firstColumns) return multiply(transpose(firstColumns), F);
   const K = zeros(nu, F.cols);
   K.data.fill(Number.NaN);
   return K;

@@ -1,4 +1,4 @@
-import { decomposeGeneral } from '../numerics/eigen.ts';
+import { decomposeGeneral, type GeneralEigen } from '../numerics/eigen.ts';
 import {
   addScaled,
   identity,
@@ -82,8 +82,8 @@ function solveAugmented(A: Matrix, B: Matrix, C: Matrix, { Q, S, R }: ControlPro
  */
 function clipUnmoved(A: Matrix, B: Matrix): { A: Matrix; clipped: number } {
   const n = A.rows;
-  const right = decomposeGeneral(A);
   const left = decomposeGeneral(transpose(A));
+  let right: GeneralEigen | null = null;
   const sizeB = Math.hypot(...B.data) || 1;
   let result = A;
   let clipped = 0;
@@ -95,6 +95,7 @@ function clipUnmoved(A: Matrix, B: Matrix): { A: Matrix; clipped: number } {
     if (left.imaginary[i] < 0) continue;
     const W = pick(left.vectors, range(n), columns);
     if (Math.hypot(...multiply(transpose(W), B).data) > NOT_MOVED * Math.hypot(...W.data) * sizeB) continue;
+    right ??= decomposeGeneral(A);
     const match = nearestMode(right, left.real[i], left.imaginary[i]);
     const V = pick(right.vectors, range(n), pair ? [match, match + 1] : [match]);
     const scaled = projectOut(result, V, W, 1 - CLIPPED_MODULUS / modulus);

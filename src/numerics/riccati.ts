@@ -1,5 +1,5 @@
 import { solveSquare } from './linearSolve.ts';
-import { addScaled, identity, type Matrix, multiply, transpose, zeros } from './matrix.ts';
+import { addScaled, block, identity, type Matrix, multiply, placeBlock, transpose, zeros } from './matrix.ts';
 
 /** Outcome of a discrete algebraic Riccati equation. */
 export interface RiccatiSolution {
@@ -77,9 +77,13 @@ function iterate(A0: Matrix, B: Matrix, Q: Matrix, R: Matrix, S: Matrix): { H: M
   let H = symmetric(addScaled(1, Q, -1, multiply(S, scaledSt)));
   for (let step = 0; step < MOST_DOUBLINGS; step++) {
     const W = addScaled(1, identity(n), 1, multiply(G, H));
-    const WA = solveSquare(W, A);
-    const WG = solveSquare(W, G);
-    if (!WA || !WG) return { H, settled: false };
+    const AG = zeros(n, 2 * n);
+    placeBlock(AG, 0, 0, A);
+    placeBlock(AG, 0, n, G);
+    const solved = solveSquare(W, AG);
+    if (!solved) return { H, settled: false };
+    const WA = block(solved, 0, n, 0, n);
+    const WG = block(solved, 0, n, n, 2 * n);
     const At = transpose(A);
     const added = symmetric(multiply(multiply(At, H), WA));
     G = symmetric(addScaled(1, G, 1, multiply(multiply(A, WG), At)));

@@ -3,9 +3,10 @@ import fc from 'fast-check';
 import quadprog from 'quadprog';
 import { describe, expect, it } from 'vitest';
 import { condenseQp } from '../../src/mpc/condense.ts';
-import type { ControlProblem } from '../../src/mpc/problem.ts';
+import { designController } from '../../src/mpc/design.ts';
+import type { ControllerDesign, ControlProblem } from '../../src/mpc/problem.ts';
 import { findTarget } from '../../src/mpc/target.ts';
-import { fromRows } from '../../src/numerics/matrix.ts';
+import { apply, diagonal, fromRows, type Matrix, zeros } from '../../src/numerics/matrix.ts';
 import { createRandom } from '../../src/numerics/random.ts';
 import { createExactSolver } from '../../src/qp/exact.ts';
 import { linearProblem } from './linearProblem.ts';
@@ -174,6 +175,44 @@ function solveWrittenOut(problem: ControlProblem, { z, uPrev, r, d }: Given): nu
   return answer.solution.slice(1 + atU, 1 + atU + 6);
 }
 
+/** The cost of moves `V`, three blocks of two inputs, by the formula of the problem along the predicted trajectory. */
+function rolledOutCost(
+  { predictor, Q, S, R, blocks }: ControlProblem,
+  { P, Tz, Tu }: ControllerDesign,
+  { z: z0, uPrev, r, d }: Given,
+  V: Float64Array,
+): number {
+  const form = (M: Matrix, v: ArrayLike<number>) =>
+    apply(M, v).reduce((sum, value, i) => sum + value * v[i], 0);
+  const target = [r[10], r[11], ...d, 1];
+  const [zs, us] = [apply(Tz, target), apply(Tu, target)];
+  const inputs = blocks.flatMap((length, b) => new Array(length).fill([V[2 * b], V[2 * b + 1]]));
+  let z: ArrayLike<number> = z0;
+  let before: number[] = uPrev;
+  let cost = 0;
+  inputs.forEach((u: number[], k) => {
+    cost += form(
+      S,
+      u.map((value, j) => value - us[j]),
+    );
+    cost += form(
+      R,
+      u.map((value, j) => value - before[j]),
+    );
+    const [free, forced] = [apply(predictor.A, z), apply(predictor.B, u)];
+    z = free.map((value, i) => value + forced[i] + d[i]);
+    before = u;
+    if (k === inputs.length - 1) return;
+    const y = apply(predictor.C, z);
+    cost += form(
+      Q,
+      y.map((value, i) => value - r[2 * k + i]),
+    );
+  });
+  const final = Array.from(z, (value, i) => value - zs[i]);
+  return cost + form(P, [...final, ...before.map((value, j) => value - us[j])]);
+}
+
 describe('the condensed quadratic program', () => {
   it('has the optimum of the problem written out in all variables, solved by npm quadprog', () => {
     fc.assert(
@@ -183,6 +222,32 @@ describe('the condensed quadratic program', () => {
         const ours = solveCondensed(problem, given);
         const theirs = solveWrittenOut(problem, given);
         for (let i = 0; i < 6; i++) expect(Math.abs(ours[i] - theirs[i])).toBeLessThan(2e-6);
+      }),
+      { numRuns: 60 },
+    );
+  });
+
+  it('has the cost of the trajectory rolled out step by step, less that of no move, for any moves: all weights, twin', () => {
+    fc.assert(
+      fc.property(fc.integer({ min: 0, max: 1e9 }), fc.boolean(), (seed, moved) => {
+        const problem: ControlProblem = {
+          ...randomProblem(seed),
+          terminal: 'riccati',
+          S: diagonal([0.4, 0.1]),
+          R: moved ? diagonal([0.1, 0.3]) : zeros(2, 2),
+        };
+        const design = designController(problem);
+        const given = drawGiven(seed);
+        const theta = Float64Array.from([...given.z, ...given.uPrev, ...given.r, ...given.d, 1]);
+        const random = createRandom(seed + 5);
+        const U = Float64Array.from({ length: 6 }, () => 2 * random() - 1);
+        const cost = (V: Float64Array) => rolledOutCost(problem, design, given, V);
+        const gradient = apply(design.qp.F, theta);
+        const curved = apply(design.qp.H, U);
+        const condensed = U.reduce((sum, u, i) => sum + u * (0.5 * curved[i] + gradient[i]), 0);
+        const rolledOut = cost(U) - cost(new Float64Array(6));
+        // Cancellation: both costs may be large against their difference.
+        expect(Math.abs(condensed - rolledOut)).toBeLessThan(1e-12 * (cost(U) + cost(new Float64Array(6))));
       }),
       { numRuns: 60 },
     );

@@ -1,7 +1,16 @@
 import fc from 'fast-check';
 import { describe, expect, it } from 'vitest';
 import { decomposeGeneral } from '../../src/numerics/eigen.ts';
-import { addScaled, fromRows, type Matrix, multiply, toRows, zeros } from '../../src/numerics/matrix.ts';
+import {
+  addScaled,
+  apply,
+  diagonal,
+  fromRows,
+  type Matrix,
+  multiply,
+  toRows,
+  zeros,
+} from '../../src/numerics/matrix.ts';
 import { createRandom } from '../../src/numerics/random.ts';
 import { solveRiccati } from '../../src/numerics/riccati.ts';
 
@@ -183,5 +192,46 @@ describe('the discrete Riccati equation', () => {
     );
     const direct = solveRiccati(A, B, Q, R, S);
     for (let i = 0; i < 4; i++) expect(direct.X.data[i]).toBeCloseTo(shifted.X.data[i], 11);
+  });
+});
+
+/*
+ * S. L. Brunton, B. W. Brunton, J. L. Proctor, J. N. Kutz, "Koopman invariant subspaces and finite linear representations of
+ * nonlinear dynamical systems for control", PLoS ONE 11:e0150171 (2016), the regulator of x1' = mu x1, x2' = lambda (x2 − x1²) + u lifted
+ * by (x1, x2, x1²), mu = −0.1, lambda = 1, Q = diag(1, 1, 0), R = 1: read; recomputed; closed form. Continuous gain, and cost from (−5, 5).
+ */
+describe('the lifted regulator of Brunton, Brunton, Proctor and Kutz', () => {
+  const [mu, lambda] = [-0.1, 1];
+  const continuousGain = [0, 1 + Math.SQRT2, -1.4955973723971818];
+  const continuousCost = 990.1798154491086;
+  const start = [-5, 5, 25];
+
+  /** Gain and cost of the exact discretisation with the weights of one sample, `Ts Q` and `Ts R`. */
+  function discrete(Ts: number): number[] {
+    const [slow, square, fast] = [Math.exp(mu * Ts), Math.exp(2 * mu * Ts), Math.exp(lambda * Ts)];
+    const { X, K, converged } = solveRiccati(
+      fromRows([
+        [slow, 0, 0],
+        [0, fast, (lambda * (square - fast)) / (lambda - 2 * mu)],
+        [0, 0, square],
+      ]),
+      fromRows([[0], [(fast - 1) / lambda], [0]]),
+      diagonal([Ts, Ts, 0]),
+      fromRows([[Ts]]),
+    );
+    expect(converged).toBe(true);
+    const cost = apply(X, start).reduce((sum, value, i) => sum + value * start[i], 0);
+    return [...K.data, cost];
+  }
+
+  it('is the limit of the discrete one: the difference halves with the sample time, and is gone once that is extrapolated', () => {
+    const exact = [...continuousGain, continuousCost];
+    const [coarse, fine] = [discrete(2e-3), discrete(1e-3)];
+    exact.forEach((value, i) => {
+      const extrapolated = 2 * fine[i] - coarse[i];
+      expect(Math.abs(extrapolated - value)).toBeLessThan(1e-5 * Math.max(1, Math.abs(value)));
+      if (value === 0) return;
+      expect((coarse[i] - value) / (fine[i] - value)).toBeCloseTo(2, 1);
+    });
   });
 });
