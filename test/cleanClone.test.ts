@@ -46,7 +46,7 @@ describe.skipIf(!inGit)('a clean clone', () => {
       printed.push(stdout);
     }
     // The summary that the README shows is the one that the demo prints, line by line.
-    const shown = blocks('').find((block) => block.startsWith('A bistable stage')) ?? 'missing';
+    const shown = blocks('text').find((block) => block.startsWith('A bistable stage')) ?? 'missing';
     expect(printed[0]).toContain(shown);
     for (const file of [
       'report.html',
