@@ -98,7 +98,7 @@ export interface CoordinateTracker {
     readonly x: Float64Array;
     readonly filled: boolean;
   };
-  /** Takes the input that the plant really receives from this sample to the next, nu entries. */
+  /** Takes the input that the actuator gives from this sample to the next (delayed and limited as it is), nu entries. */
   readonly apply: (u: ArrayLike<number>) => void;
   /** Forgets all history. */
   readonly reset: () => void;

@@ -21,7 +21,7 @@ interface LimitedSignal {
 
 /**
  * How often and how badly each limit was broken: outputs between the samples too, inputs and rates as they were sent. An
- * excursion runs from the first value outside to the next one inside.
+ * excursion runs from the first value outside to the next one inside. NaN counts as outside.
  */
 export function reportLimits(record: LoopRecord, problem: ControlProblem, plant: Plant): LimitReport[] {
   return limitedSignals(record, problem, plant).map(measureExcursions);
@@ -78,7 +78,8 @@ function measureExcursions(signal: LimitedSignal): LimitReport {
   let first: number | null = null;
   for (let i = 0; i < values.length; i++) {
     const excess = Math.max(min - values[i], values[i] - max);
-    if (!(excess > NOTICED * range)) {
+    // A value that is not a number is outside, and shows as the worst excess.
+    if (excess <= NOTICED * range) {
       run = 0;
       continue;
     }

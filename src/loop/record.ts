@@ -16,7 +16,7 @@ export interface LoopRecord {
   readonly y: Float64Array;
   /** (steps + 1) × ny: reference at sample k. */
   readonly reference: Float64Array;
-  /** steps × nu: what the controller sent, and what reached the plant (delayed, disturbed, saturated). */
+  /** steps × nu: what the controller sent, and what reached the plant (delayed, limited by the actuator, disturbed). */
   readonly u: Float64Array;
   readonly applied: Float64Array;
   /** Points between samples at which the outputs are also kept, per sample (the sample itself included). */

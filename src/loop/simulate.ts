@@ -42,8 +42,9 @@ const FINE = 4;
 const RUNAWAY = 50;
 
 /**
- * Runs the controller against the true plant: measure (with noise), decide, delay, saturate, add the disturbance,
- * integrate over the sample with parameters off nominal. The run ends early when the state leaves all bounds.
+ * Runs the controller against the true plant: measure (with noise), decide, delay, limit to the actuator's rate and range, add
+ * the disturbance, integrate over the sample with parameters off nominal. Delayed inputs among the coordinates are those of the
+ * actuator, without the disturbance. The run ends early when the state leaves all bounds.
  *
  * @throws whatever the plant's functions throw.
  */
@@ -68,6 +69,7 @@ export function simulateLoop(request: LoopRequest): LoopOutcome {
   const tracker = createCoordinateTracker(request.coordinates, plant);
   const seen = request.outputsSeen.map((name) => plant.outputs.findIndex((output) => output.name === name));
   const resting = Float64Array.from(plant.operatingPoint.u);
+  const actuated = resting.slice();
 
   const x = new Float64Array((planned + 1) * nx);
   const y = new Float64Array((planned + 1) * ny);
@@ -104,9 +106,11 @@ export function simulateLoop(request: LoopRequest): LoopOutcome {
     iterations.push(decision.iterations);
     const arriving =
       k >= scenario.delay ? u.subarray((k - scenario.delay) * nu, (k - scenario.delay + 1) * nu) : resting;
+    actuate(actuated, arriving, plant, sampleTime);
+    tracker.apply(actuated);
     const acting = applied.subarray(k * nu, (k + 1) * nu);
-    actuate(acting, arriving, plant, scenario, k * sampleTime);
-    tracker.apply(acting);
+    acting.set(actuated);
+    addDisturbances(acting, plant, scenario, k * sampleTime);
     const outcome = integrateFine(plant, p, now, acting, sampleTime, request.substeps, FINE, between);
     if (outcome === 'diverged' || ranAway(plant, between.subarray((FINE - 1) * nx))) {
       diverged = true;
@@ -185,17 +189,27 @@ function addNoise(
   );
 }
 
-/** What acts on the plant: the command, saturated by the actuator, and the disturbances that are switched on. */
-function actuate(
-  out: Float64Array,
-  command: ArrayLike<number>,
+/**
+ * The actuator: follows the command as fast as its rate lets it and as far as its range. `actuated` holds what it did over the
+ * sample before, and is overwritten.
+ */
+function actuate(actuated: Float64Array, command: ArrayLike<number>, plant: Plant, sampleTime: number): void {
+  plant.inputs.forEach(({ min, max, rate }, j) => {
+    const most = rate === undefined ? Number.POSITIVE_INFINITY : rate * sampleTime;
+    const reached = Math.min(actuated[j] + most, Math.max(actuated[j] - most, command[j]));
+    actuated[j] = Math.min(max, Math.max(min, reached));
+  });
+}
+
+/** Adds the disturbances that are switched on: they act behind the actuator, and no one measures them. */
+function addDisturbances(
+  acting: Float64Array,
   plant: Plant,
   { disturbances }: ScenarioSettings,
   time: number,
 ): void {
-  plant.inputs.forEach(({ name, min, max }, j) => {
-    out[j] = Math.min(max, Math.max(min, command[j]));
-    for (const { input, value, from } of disturbances) if (input === name && time >= from) out[j] += value;
+  plant.inputs.forEach(({ name }, j) => {
+    for (const { input, value, from } of disturbances) if (input === name && time >= from) acting[j] += value;
   });
 }
 

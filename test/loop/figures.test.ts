@@ -86,10 +86,11 @@ describe('limits broken, counted by hand', () => {
     expect(report.limits.find(({ kind }) => kind === 'input')).toMatchObject({ count: 0 });
   });
 
-  it('a NaN output does not read as within the limits for ever: it is not counted, and the tracking figures show it', () => {
+  it('a NaN output is outside every limit: counted, the worst excess NaN, and the tracking figures show it too', () => {
     const y = zeros(11);
     y[4] = Number.NaN;
     const report = assessLoop(recordOf(y, zeros(11), zeros(10)), problem, plant);
+    expect(report.limits[0]).toMatchObject({ count: 1, longest: 1, first: 4, worst: Number.NaN });
     expect(report.tracking[0].rms).toBeNaN();
   });
 });

@@ -1,4 +1,5 @@
 import { describe, expect, it } from 'vitest';
+import type { CoordinateSettings } from '../../src/data/coordinates.ts';
 import type { ScenarioSettings } from '../../src/loop/scenario.ts';
 import { simulateLoop } from '../../src/loop/simulate.ts';
 import type { Controller } from '../../src/mpc/controller.ts';
@@ -35,11 +36,11 @@ const still: ScenarioSettings = {
 
 /** A controller that sends what it is told, and keeps what it saw. */
 function scripted(send: (k: number) => number) {
-  const seen: { x: number; reference: number[] }[] = [];
+  const seen: { x: number; all: number[]; reference: number[] }[] = [];
   let k = 0;
   const controller: Controller = {
     step: (x, reference) => {
-      seen.push({ x: x[0], reference: Array.from(reference) });
+      seen.push({ x: x[0], all: Array.from(x), reference: Array.from(reference) });
       return {
         u: Float64Array.of(send(k++)),
         status: 'optimal',
@@ -56,7 +57,12 @@ function scripted(send: (k: number) => number) {
   return { controller, seen };
 }
 
-function run(scenario: Partial<ScenarioSettings>, send: (k: number) => number, plant = lag) {
+function run(
+  scenario: Partial<ScenarioSettings>,
+  send: (k: number) => number,
+  plant = lag,
+  coordinates: CoordinateSettings = { read: 'state', outputLags: 0, inputLags: 0 },
+) {
   const { controller, seen } = scripted(send);
   const outcome = simulateLoop({
     name: 'scripted',
@@ -65,7 +71,7 @@ function run(scenario: Partial<ScenarioSettings>, send: (k: number) => number, p
     outputsSeen: ['y1'],
     problem,
     scenario: { ...still, ...scenario },
-    coordinates: { read: 'state', outputLags: 0, inputLags: 0 },
+    coordinates,
     substeps: 8,
     seed: 3,
   });
@@ -92,6 +98,24 @@ describe('the closed loop on the true plant', () => {
     const { record } = run({ disturbances: [{ input: 'u1', value: 0.25, from: 1 }] }, () => 7);
     expect(record.applied[0]).toBe(1);
     expect(record.applied[12]).toBe(1.25);
+  });
+
+  it('the actuator follows no faster than its rate, from the operating input on, by hand', () => {
+    const slow = { ...lag, inputs: [{ ...lag.inputs[0], rate: 2 }] };
+    const { record } = run({}, (k) => (k < 8 ? 7 : -0.1), slow);
+    const applied = Array.from(record.applied.slice(0, 14), (u) => Math.round(u * 1e12) / 1e12);
+    expect(applied).toEqual([0.2, 0.4, 0.6, 0.8, 1, 1, 1, 1, 0.8, 0.6, 0.4, 0.2, 0, -0.1]);
+    expect(record.u[0]).toBe(7);
+  });
+
+  it('delayed inputs that the controller sees are those of the actuator: no disturbance leaks into them', () => {
+    const { seen } = run(
+      { delay: 2, disturbances: [{ input: 'u1', value: 0.25, from: 0 }] },
+      (k) => 3 - k,
+      lag,
+      { read: 'delays', outputLags: 0, inputLags: 1 },
+    );
+    expect(seen.slice(0, 9).map(({ all }) => all[1])).toEqual([0, 0, 0, 1, 1, 1, 0, -1, -1]);
   });
 
   it('a parameter off nominal changes the true plant, closed form', () => {
