@@ -1,6 +1,6 @@
 import { join } from 'node:path';
 import { countSamples } from '../data/dataset.ts';
-import { formatFigure } from '../report/summary.ts';
+import { formatFigure } from '../findings/figures.ts';
 import type { Study } from '../study/study.ts';
 import { STAGES, type Stage, type StageContents, type StageFolder } from './stageFiles.ts';
 

@@ -9,9 +9,9 @@ import {
   type SizeName,
   sizesOf,
 } from './arrays.ts';
-import type { ExportOptions } from './exportFiles.ts';
 import { liftingFormula } from './liftingFormulas.ts';
 import { cLiteral } from './numberText.ts';
+import type { ExportOptions } from './options.ts';
 import { commentText, symbolName } from './symbols.ts';
 
 /** Width of comments, and the longest line of numbers: C99 5.2.4.1 promises 4095 characters a line. */

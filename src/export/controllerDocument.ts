@@ -2,11 +2,7 @@ import { STANDING_HAZARDS } from '../findings/hazards.ts';
 import type { StudyResult } from '../findings/studyResult.ts';
 import { type Matrix, toRows } from '../numerics/matrix.ts';
 import type { Channel, InputChannel } from '../plant/plant.ts';
-import type { ExportOptions } from './exportFiles.ts';
-
-/** Value of `format` in every controller file, and the version of its layout. */
-export const CONTROLLER_FORMAT = 'liftwright-controller';
-export const CONTROLLER_FORMAT_VERSION = 1;
+import { CONTROLLER_FORMAT, CONTROLLER_FORMAT_VERSION, type ExportOptions } from './options.ts';
 
 /** Everything that defines the controller, as plain data for `controller.json`; `readController` makes the design of it. */
 export function controllerDocument(result: StudyResult, { name, version }: ExportOptions) {

@@ -1,4 +1,4 @@
-import { CONTROLLER_FORMAT, CONTROLLER_FORMAT_VERSION } from './controllerDocument.ts';
+import { CONTROLLER_FORMAT, CONTROLLER_FORMAT_VERSION } from './options.ts';
 
 type Schema = Readonly<Record<string, unknown>>;
 

@@ -5,16 +5,9 @@ import { controllerDocument } from './controllerDocument.ts';
 import { CONTROLLER_SCHEMA } from './controllerSchema.ts';
 import { writeJson } from './json.ts';
 import { writeMatrixMarket } from './matrixMarket.ts';
+import type { ExportOptions } from './options.ts';
 import { writeReadme } from './readme.ts';
 import { computeExample } from './workedExample.ts';
-
-/** What a result does not say of itself. */
-export interface ExportOptions {
-  /** The study's short name: part of the header's name and of its symbols. */
-  readonly name: string;
-  /** Of this program. */
-  readonly version: string;
-}
 
 /** One exported file; `path` is relative to the export folder, with `/`. */
 export interface ExportedFile {

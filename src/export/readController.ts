@@ -2,7 +2,7 @@ import type { Lifting, LiftingPart, PartConstant } from '../lift/lifting.ts';
 import type { CondensedQp, ControllerDesign, ControlProblem } from '../mpc/problem.ts';
 import type { InputChannel } from '../plant/plant.ts';
 import type { FitSummary, Predictor } from '../predictor/predictor.ts';
-import { CONTROLLER_FORMAT, CONTROLLER_FORMAT_VERSION } from './controllerDocument.ts';
+import { CONTROLLER_FORMAT, CONTROLLER_FORMAT_VERSION } from './options.ts';
 import { type Field, readFields, UnusableControllerError } from './readFields.ts';
 
 export { UnusableControllerError };

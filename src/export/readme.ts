@@ -6,9 +6,9 @@ import type { StudyResult } from '../findings/studyResult.ts';
 import type { ControlProblem } from '../mpc/problem.ts';
 import { listLiftingConstants, listMatrices, SIZE_MEANINGS, type SizeName, sizesOf } from './arrays.ts';
 import { headerName } from './cHeader.ts';
-import type { ExportOptions } from './exportFiles.ts';
 import { liftingFormula } from './liftingFormulas.ts';
 import { shortest } from './numberText.ts';
+import type { ExportOptions } from './options.ts';
 import type { WorkedExample } from './workedExample.ts';
 
 /**
@@ -117,7 +117,7 @@ function describeSteps({ delay, preview, disturbanceGain, horizon }: ControlProb
     : 'r holds the present reference N times';
   const roll =
     delay > 0
-      ? `Roll it through the ${plural(delay, 'input')} that ${delay === 1 ? 'is' : 'are'} still under way, oldest first: z = A z + B u + d, each with its own scaled u.`
+      ? `Roll it through the ${plural(delay, 'input')} that ${delay === 1 ? 'is' : 'are'} still under way, oldest first: z = A z + B u + d, each with its own scaled u; after each, lift the scaled coordinates anew that stand in the first NX entries of z: z = psi(x).`
       : 'There is no input delay to roll it through.';
   return [
     'Every sample, with all numbers scaled by scaled = (physical - centre) / half:',

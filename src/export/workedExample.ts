@@ -1,8 +1,9 @@
 import type { StudyResult } from '../findings/studyResult.ts';
 import { bindLifting } from '../lift/bind.ts';
 import { createEvaluationContext } from '../lift/context.ts';
+import { createDelayRoll } from '../mpc/delay.ts';
 import type { CondensedQp } from '../mpc/problem.ts';
-import { apply, applyInto } from '../numerics/matrix.ts';
+import { apply } from '../numerics/matrix.ts';
 import { nominalParameters, type Plant, readOutputs } from '../plant/plant.ts';
 import { createExactSolver } from '../qp/exact.ts';
 import type { QpStatus } from '../qp/qp.ts';
@@ -42,7 +43,7 @@ export function computeExample(result: StudyResult): WorkedExample {
   const { plant, design } = result;
   const { problem, qp, K } = design;
   const { predictor, delay, preview } = problem;
-  const { scaling, coordinates, outputs, A, B } = predictor;
+  const { scaling, coordinates, outputs } = predictor;
   const { theta: at, N, ny, nz } = qp;
   const record = result.runs[0]?.record;
   const state = Array.from(record ? record.x.subarray(0, record.nx) : plant.operatingPoint.x);
@@ -58,13 +59,9 @@ export function computeExample(result: StudyResult): WorkedExample {
   const uPrevScaled = toScaled(uPrev, scaling.u);
   const zMeasured = new Float64Array(nz);
   bound.liftInto(zMeasured, xScaled);
-  const pushed = apply(B, uPrevScaled);
   const z = zMeasured.slice();
-  const next = new Float64Array(nz);
-  for (let i = 0; i < delay; i++) {
-    applyInto(next, A, z);
-    for (let j = 0; j < nz; j++) z[j] = next[j] + pushed[j];
-  }
+  const underWay = Array.from({ length: delay }, () => Float64Array.from(uPrevScaled));
+  createDelayRoll(predictor, bound)(z, underWay, new Float64Array(nz));
 
   const rest = readOutputs(plant, plant.operatingPoint.x, nominalParameters(plant));
   const columns = outputs.map(({ name }) => plant.outputs.findIndex((output) => output.name === name));

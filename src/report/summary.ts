@@ -1,4 +1,5 @@
 import type { Caution, Severity } from '../findings/caution.ts';
+import { formatFigure, plural, withUnit } from '../findings/figures.ts';
 import type { AcceptanceRow, LoopRun, StudyResult } from '../findings/studyResult.ts';
 import type { LimitReport, TrackingReport } from '../loop/record.ts';
 
@@ -14,24 +15,7 @@ const LABELS: Record<LoopRun['name'], string> = {
   linearised: 'linearised at the operating point',
 };
 
-/** Three significant digits, trailing zeros dropped; `1.2e-5` where plain digits would be long. */
-export function formatFigure(value: number): string {
-  if (!Number.isFinite(value))
-    return Number.isNaN(value) ? 'not a number' : value > 0 ? 'infinite' : '-infinite';
-  const size = Math.abs(value);
-  if (size !== 0 && (size < 1e-3 || size >= 1e5)) {
-    return value
-      .toExponential(1)
-      .replace(/\.0(?=e)/, '')
-      .replace('e+', 'e');
-  }
-  return String(Number(value.toPrecision(3)));
-}
-
-const withUnit = (value: number, unit: string) =>
-  unit === '1' ? formatFigure(value) : `${formatFigure(value)} ${unit}`;
 const percent = (share: number) => `${formatFigure(100 * share)} %`;
-const plural = (count: number, noun: string) => `${count} ${noun}${count === 1 ? '' : 's'}`;
 
 /** At most `rows` entries, the last of them saying how many more there are. */
 function firstOf(lines: readonly string[], rows: number, where: string): string[] {

@@ -1,5 +1,5 @@
+import { formatFigure } from '../findings/figures.ts';
 import type { LoopRun } from '../findings/studyResult.ts';
-import { formatFigure } from './summary.ts';
 
 export { formatFigure };
 

@@ -1,10 +1,9 @@
 import { durationOf } from '../loop/reference.ts';
 import type { ReferenceSettings } from '../loop/scenario.ts';
 import type { InputChannel, Plant } from '../plant/plant.ts';
-import type { StudyOrigin } from './bindStudy.ts';
 import type { ChannelQuantity } from './reader.ts';
-import type { StudyValues } from './readStudy.ts';
-import type { Study } from './study.ts';
+import type { Study, StudyOrigin } from './study.ts';
+import type { StudyValues } from './table.ts';
 import { defaultFamilyValues, INPUT_DEFAULTS } from './table.ts';
 
 type InUnits = (quantity: ChannelQuantity) => number;

@@ -5,19 +5,9 @@ import { checkRanges } from './checkRanges.ts';
 import { suggestWord } from './nearest.ts';
 import { type Problem, sortProblems } from './problem.ts';
 import { type ChannelQuantity, quote } from './reader.ts';
-import type { StudyDraft, StudyValues } from './readStudy.ts';
-import type { Study } from './study.ts';
-
-/** Where a study comes from: what the text itself does not say. */
-export interface StudyOrigin {
-  /** Absolute path of the study file, and the SHA-256 of its text. */
-  readonly file: string;
-  readonly hash: string;
-  /** Absolute path of the plant module. */
-  readonly plant: string;
-  /** Replaces the study's own seed. */
-  readonly seed?: number;
-}
+import type { StudyDraft } from './readStudy.ts';
+import type { Study, StudyOrigin } from './study.ts';
+import type { StudyValues } from './table.ts';
 
 /** A study, or what is wrong with it. */
 export type BoundStudy =

@@ -2,7 +2,8 @@ import type { Channel, Plant } from '../plant/plant.ts';
 import { convertQuantity, findChannel, unitName } from './channels.ts';
 import type { Problem } from './problem.ts';
 import type { ChannelQuantity, Spot } from './reader.ts';
-import type { StudyDraft, StudyValues } from './readStudy.ts';
+import type { StudyDraft } from './readStudy.ts';
+import type { StudyValues } from './table.ts';
 
 type Values = Partial<StudyValues>;
 type Refuse = (spot: Spot, must: string, got: string, wayOut: string) => void;

@@ -1,12 +1,9 @@
 import { type Document, isMap, LineCounter, type Node, parseDocument, visit, type YAMLError } from 'yaml';
-import type { Basis, Fields, Values } from './kinds.ts';
+import type { Basis, Fields } from './kinds.ts';
 import { type Problem, sortProblems } from './problem.ts';
 import { createReader, describeNode, type Reader } from './reader.ts';
 import { checkRules } from './rules.ts';
-import { STUDY, TABLE } from './table.ts';
-
-/** The values of a study file before the plant is known. */
-export type StudyValues = Values<typeof TABLE>;
+import { STUDY, type StudyValues, TABLE } from './table.ts';
 
 /** A study file that was read: its values as far as they are usable, and everything that is wrong so far. */
 export interface StudyDraft {

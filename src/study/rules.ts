@@ -1,6 +1,6 @@
 import type { Problem } from './problem.ts';
 import type { Spot } from './reader.ts';
-import type { StudyValues } from './readStudy.ts';
+import type { StudyValues } from './table.ts';
 
 type Fault = Pick<Problem, 'must' | 'got' | 'wayOut'>;
 

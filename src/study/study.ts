@@ -39,3 +39,14 @@ export interface AcceptSettings {
   /** Seconds. */
   readonly settling: number | null;
 }
+
+/** Where a study comes from: what the text itself does not say. */
+export interface StudyOrigin {
+  /** Absolute path of the study file, and the SHA-256 of its text. */
+  readonly file: string;
+  readonly hash: string;
+  /** Absolute path of the plant module. */
+  readonly plant: string;
+  /** Replaces the study's own seed. */
+  readonly seed?: number;
+}

@@ -1,5 +1,6 @@
 import { absent, derived, optional, required } from './fields.ts';
 import { byName, group, list, oneOrMore } from './groups.ts';
+import type { Values } from './kinds.ts';
 import {
   channelQuantity,
   choice,
@@ -251,3 +252,6 @@ function defaultsOf<T>(kind: Kind<T>): T {
   }
   return values as T;
 }
+
+/** The values of a study file before the plant is known. */
+export type StudyValues = Values<typeof TABLE>;

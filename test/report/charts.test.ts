@@ -5,19 +5,14 @@ import type { StudyResult } from '../../src/findings/studyResult.ts';
 import { describeCharts } from '../../src/report/charts/all.ts';
 import { closedLoopChart } from '../../src/report/charts/closedLoop.ts';
 import { coverageCharts } from '../../src/report/charts/coverage.ts';
-import {
-  breakLines,
-  type ChartView,
-  chartConfig,
-  drawingSource,
-  PAINTERS,
-} from '../../src/report/charts/drawing.ts';
+import { breakLines, chartConfig, drawingSource, PAINTERS } from '../../src/report/charts/drawing.ts';
 import { excitationChart } from '../../src/report/charts/excitation.ts';
 import { findExcursions } from '../../src/report/charts/loopSignals.ts';
 import { rivalsChart } from '../../src/report/charts/rivals.ts';
 import { solverChart } from '../../src/report/charts/solver.ts';
 import { spectrumChart } from '../../src/report/charts/spectrum.ts';
 import { trustChart } from '../../src/report/charts/trust.ts';
+import type { ChartView } from '../../src/report/charts/view.ts';
 import type { ChartSpec, Mark } from '../../src/report/spec.ts';
 import { COLOURS, TEXT } from '../../src/report/style.ts';
 import { sampleResult } from '../helpers/sampleResult.ts';

@@ -1,9 +1,10 @@
 import fc from 'fast-check';
 import { describe, expect, it } from 'vitest';
 import type { Caution } from '../../src/findings/caution.ts';
+import { formatFigure } from '../../src/findings/figures.ts';
 import type { AcceptanceRow, LoopRun, StudyResult } from '../../src/findings/studyResult.ts';
 import type { LimitReport, TrackingReport } from '../../src/loop/record.ts';
-import { formatFigure, SCREEN, writeSummary } from '../../src/report/summary.ts';
+import { SCREEN, writeSummary } from '../../src/report/summary.ts';
 
 const limit = (over: Partial<LimitReport> = {}): LimitReport => ({
   kind: 'output',

@@ -1,6 +1,6 @@
 import type { Chart } from 'chart.js';
 import type { Mark } from '../spec.ts';
-import type { ChartView } from './drawing.ts';
+import type { ChartView } from './view.ts';
 
 /*
  * The functions below are written into the page as their own text (see `drawing.ts`): they use nothing from outside this file

@@ -2,29 +2,7 @@ import type { Chart, ChartConfiguration, Plugin } from 'chart.js';
 import type { ChartSpec } from '../spec.ts';
 import { drawKey, KEY_FUNCTIONS, keyItems } from './drawKey.ts';
 import { drawAbove, drawBelow, MARK_FUNCTIONS } from './drawMarks.ts';
-
-/** How a description is to be drawn: what differs between a PNG, a wide page, a phone, a dark page and a print. */
-export interface ChartView {
-  /** Logical pixels. */
-  readonly width: number;
-  /** The sentence on top is drawn too; a page writes it as text instead. */
-  readonly title: boolean;
-  readonly fontFamily: string;
-  /** Exchange of colours by their light form; empty on white. */
-  readonly colours: Readonly<Record<string, string>>;
-  readonly paper: string;
-  readonly ink: string;
-  readonly quiet: string;
-  readonly grid: string;
-  readonly responsive: boolean;
-  readonly ratio: number;
-  readonly text: {
-    readonly title: number;
-    readonly axis: number;
-    readonly tick: number;
-    readonly label: number;
-  };
-}
+import type { ChartView } from './view.ts';
 
 /** What draws besides the library, handed in so that each function can be written into the page as text. */
 export const PAINTERS = { drawBelow, drawAbove, drawKey, keyItems };
