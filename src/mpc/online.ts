@@ -2,6 +2,7 @@ import type { BoundLifting } from '../lift/lifting.ts';
 import { applyInto } from '../numerics/matrix.ts';
 import type { QpSolver, QpStatus } from '../qp/qp.ts';
 import type { Controller, ControlStep, Fallback } from './controller.ts';
+import { createDelayRoll } from './delay.ts';
 import { createObserver } from './observer.ts';
 import { stackPrediction } from './prediction.ts';
 import type { ControllerDesign } from './problem.ts';
@@ -10,7 +11,7 @@ import { createWarmStart } from './warmStart.ts';
 /**
  * The controller that runs sample by sample:
  * 1. lift the measurement, filter the lifted one-step residual into `d`;
- * 2. roll the lifted state through the inputs still under way: `z ← A z + B u + d`, `delay` times;
+ * 2. roll the lifted state through the inputs still under way: `z ← A z + B u + d` and lifted anew, `delay` times;
  * 3. with `θ = (z, u_prev, r, d, 1)` solve the QP, from the last working set or that one shifted by a stage;
  * 4. send the first move, clamped to the rate and input limits. When the solve is not optimal the last plan is sent on,
  *    shifted; without one the last input is held. A measurement that is not finite is such a case, status `failed`.
@@ -26,19 +27,18 @@ export function createController(
 ): Controller {
   const { problem, qp } = design;
   const { predictor, delay } = problem;
-  const { A, B, C, scaling } = predictor;
+  const { scaling } = predictor;
   const { N, nu, ny, nz, theta: at } = qp;
   const observer = createObserver(predictor, bound, problem.disturbanceGain);
+  const roll = createDelayRoll(predictor, bound);
   const warm = createWarmStart(qp, solver);
-  const stacked = stackPrediction(A, B, C, qp.blocks);
+  const stacked = stackPrediction(predictor.A, predictor.B, predictor.C, qp.blocks);
   const blockOf = qp.blocks.flatMap((length, b) => new Array<number>(length).fill(b));
 
   const theta = new Float64Array(qp.ntheta);
   theta[at.one] = 1;
   const z = theta.subarray(at.z, at.z + nz);
   const uPrev = theta.subarray(at.uPrev, at.uPrev + nu);
-  const rolled = new Float64Array(nz);
-  const effect = new Float64Array(nz);
   const q = new Float64Array(qp.n);
   const shared = new Float64Array(qp.m);
   const lower = new Float64Array(qp.m);
@@ -58,15 +58,6 @@ export function createController(
   };
   reset();
 
-  const rollThroughDelay = () => {
-    z.set(observer.z);
-    for (let i = 0; i < delay; i++) {
-      applyInto(rolled, A, z);
-      applyInto(effect, B, queue[i]);
-      for (let j = 0; j < nz; j++) z[j] = rolled[j] + effect[j] + observer.d[j];
-    }
-  };
-
   const readReference = (reference: Float64Array) => {
     for (let k = 0; k < N; k++) {
       const row = problem.preview ? delay + k : 0;
@@ -77,7 +68,8 @@ export function createController(
   };
 
   const solve = (reference: Float64Array) => {
-    rollThroughDelay();
+    z.set(observer.z);
+    roll(z, queue, observer.d);
     readReference(reference);
     theta.set(observer.d, at.d);
     applyInto(q, qp.F, theta);

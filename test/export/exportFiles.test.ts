@@ -179,10 +179,13 @@ describe('the exported folder', () => {
 
   it('theta, gradient and bounds follow from the matrix files by the README’s steps (independent reading)', () => {
     const [A, B] = [matrix('A'), matrix('B')];
+    const { centre, half } = smallResult().predictor.scaling.x;
     let z = example.zMeasured;
     for (let i = 0; i < controller.problem.delay; i++) {
       const [free, forced] = [times(A, z), times(B, example.uPrevScaled)];
-      z = free.map((value, j) => value + forced[j]);
+      const xs = free.slice(0, centre.length).map((value, j) => value + forced[j]);
+      const x = xs.map((value, j) => centre[j] + half[j] * value);
+      z = (controller.lifting.parts as LiftingPart[]).flatMap((part) => evaluatePart(part, xs, x));
     }
     expect(distance(z, example.z)).toBeLessThan(ROUNDING);
     const { outputs } = controller.scaling;
