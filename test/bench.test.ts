@@ -1,0 +1,19 @@
+import { spawnSync } from 'node:child_process';
+import { readdirSync } from 'node:fs';
+import { describe, expect, it } from 'vitest';
+
+const benches = readdirSync('test/bench').filter(
+  (file) => file.endsWith('.mjs') && !['all.mjs', 'measure.mjs', 'qpSequences.mjs'].includes(file),
+);
+
+describe('the benches', () => {
+  it.each(benches)('%s runs at its smallest sizes and prints its figures', (file) => {
+    const { status, stdout, stderr } = spawnSync(process.execPath, [`test/bench/${file}`, '--smoke'], {
+      encoding: 'utf8',
+    });
+    expect({ status, stderr }).toEqual({ status: 0, stderr: '' });
+    expect(stdout).toMatch(/Node v\d+/);
+    expect(stdout).toMatch(/\d\.\d/);
+    expect(stdout).not.toMatch(/NaN/);
+  });
+});
