@@ -102,7 +102,10 @@ function drawRows(random: Random, kind: Kind, n: number): number[][] {
     case 'duplicate':
       return [...general, ...general.map((row) => row.map((g) => g * (random() < 0.5 ? 1 : -2)))];
     case 'parallel':
-      return [...general, ...general.map(() => pick().map((g) => g + 10 ** (-4 - 5 * random()) * drawNormal(random)))];
+      return [
+        ...general,
+        ...general.map(() => pick().map((g) => g + 10 ** (-4 - 5 * random()) * drawNormal(random))),
+      ];
     case 'dependent equality': {
       const first = general.slice(0, Math.ceil(n / 3));
       const sums = first.map((row, i) => row.map((g, j) => 2 * g - first[(i + 1) % first.length][j]));
@@ -112,7 +115,9 @@ function drawRows(random: Random, kind: Kind, n: number): number[][] {
       // Box, rate and lower-triangular output rows, as a horizon has them.
       const decay = 0.6 + 0.5 * random();
       const rates = box.map((row, i) => row.map((g, j) => (j === i - 1 ? -1 : g)));
-      const outputs = box.map((_, i) => unit(i).map((__, j) => (j <= i ? decay ** (i - j) * (1 + 0.1 * (i - j)) : 0)));
+      const outputs = box.map((_, i) =>
+        unit(i).map((__, j) => (j <= i ? decay ** (i - j) * (1 + 0.1 * (i - j)) : 0)),
+      );
       return [...box, ...rates, ...outputs];
     }
     default:
