@@ -1,5 +1,4 @@
 import fc from 'fast-check';
-// @ts-expect-error: the package has no types; arrays are 1-based.
 import quadprog from 'quadprog';
 import { describe, expect, it } from 'vitest';
 import { condenseQp } from '../../src/mpc/condense.ts';

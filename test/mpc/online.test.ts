@@ -78,6 +78,13 @@ describe('the controller sample by sample', () => {
     for (let k = 0; k + delay <= 80; k++) expect(late.xs[k + delay][0]).toBeCloseTo(prompt.xs[k][0], 10);
   });
 
+  it('with preview and a delay reads the reference that much further ahead: the same response at the same time, relation', () => {
+    const step = (k: number) => (k >= 40 ? 0.4 : 0);
+    const prompt = run(trackFirst(), 80, step);
+    const late = run(trackFirst({ delay: 3 }), 80, step);
+    for (let k = 0; k <= 80; k++) expect(late.xs[k][0]).toBeCloseTo(prompt.xs[k][0], 10);
+  });
+
   it('with preview moves before the reference does, without it never', () => {
     const step = (k: number) => (k >= 20 ? 0.4 : 0);
     expect(Math.abs(run(trackFirst(), 20, step).xs[18][0])).toBeGreaterThan(1e-3);
