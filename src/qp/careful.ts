@@ -1,9 +1,9 @@
 import { findCertificate } from './certificate.ts';
-import { type Iterate, measure } from './iterate.ts';
+import { findWrongSign, type Iterate, measure } from './iterate.ts';
 import type { OrthogonalFactor } from './orthogonalFactor.ts';
 import { dot, largest } from './products.ts';
 import type { QpResult, QpStatus } from './qp.ts';
-import { ACCEPTED, CONSISTENT, findViolated, findWorst, hasWrongSign } from './rounds.ts';
+import { ACCEPTED, CONSISTENT, findViolated, findWorst } from './rounds.ts';
 
 /** Refinement ends here, relative to the size of the terms. */
 const ROUNDING = 2e-16;
@@ -38,8 +38,10 @@ export function solveCarefully(
     result.iterations++;
     settle(it, orthogonal);
     if (!(largest(x) < Number.POSITIVE_INFINITY)) return 'failed';
-    if (hasWrongSign(it)) {
-      dropWorstSign(it, orthogonal);
+    const wrong = findWrongSign(it);
+    if (wrong >= 0) {
+      side[it.factor.rows[wrong]] = 0;
+      orthogonal.removeAt(wrong);
       continue;
     }
     const objective = orthogonal.objective();
@@ -82,21 +84,6 @@ function settle(it: Iterate, orthogonal: OrthogonalFactor): void {
     measure(it);
     if (pass > 0 && !(it.unsolved <= 0.5 * before)) return;
   }
-}
-
-function dropWorstSign({ factor, side, equal }: Iterate, orthogonal: OrthogonalFactor): void {
-  let worst = -1;
-  let most = 0;
-  for (let j = 0; j < factor.k; j++) {
-    const i = factor.rows[j];
-    const wrong = -side[i] * factor.mu[j];
-    if (equal[i] === 0 && wrong > most) {
-      most = wrong;
-      worst = j;
-    }
-  }
-  side[factor.rows[worst]] = 0;
-  orthogonal.removeAt(worst);
 }
 
 type Joined = 'joined' | 'exempt' | 'infeasible';

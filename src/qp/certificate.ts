@@ -2,15 +2,19 @@ import type { Iterate } from './iterate.ts';
 import type { OrthogonalFactor } from './orthogonalFactor.ts';
 import { addRow, dot } from './products.ts';
 
+/** Corrections of `v` towards `Gᵀ v = 0`. */
+const PASSES = 4;
 /** The proof must exceed the rounding of its own terms by this share of them. */
 const LEAST_MARGIN = 1e-11;
-/** The proof holds for all points up to this many times the size of the present one. */
+/** What is left of `Gᵀ v`, relative to its terms. */
+const CLOSED = 1e-10;
+/** The proof holds for all points up to this many times the size of the present one and of the bounds. */
 const REACH = 1e3;
 
 /**
  * Turns the direction in which `joinOne` could go on for ever into `v` with `Gᵀ v = 0` and `Σ (v⁺ upper − v⁻ lower) < 0`, and
  * checks it with G and the bounds themselves: what is left of `Gᵀ v` could be made up for only by points more than a
- * thousand times larger than the present one. False, when that does not hold: then nothing is proved.
+ * thousand times larger than the present one and the bounds. False, when that does not hold: then nothing is proved.
  *
  * @param orthogonal the factor to refine with; null: the working set's own. @param v m entries, overwritten.
  */
@@ -23,8 +27,8 @@ export function findCertificate(it: Iterate, orthogonal: OrthogonalFactor | null
     const i = factor.rows[j];
     v[i] = -enteringSide * scale[i] * direction[j];
   }
-  for (let pass = 0; pass < 2; pass++) {
-    combine(step, it, v);
+  let left = combine(step, it, v);
+  for (let pass = 0; pass < PASSES && left > 0; pass++) {
     if (orthogonal) {
       for (let j = n - 1; j >= 0; j--) step[j] = dot(qp.Linv, j * n, step, 0, j + 1);
       right.fill(0);
@@ -37,32 +41,32 @@ export function findCertificate(it: Iterate, orthogonal: OrthogonalFactor | null
       factor.solveOther(right, right);
     }
     for (let j = 0; j < factor.k; j++) v[factor.rows[j]] += scale[factor.rows[j]] * right[j];
+    left = combine(step, it, v);
   }
-  let most = 0;
-  for (let i = 0; i < v.length; i++) most = Math.max(most, Math.abs(v[i]));
   let margin = 0;
   let terms = 0;
+  let reach = it.size;
+  let pull = 0;
   for (let i = 0; i < v.length; i++) {
     if (v[i] === 0) continue;
     const bound = v[i] > 0 ? upper[i] : lower[i];
-    // A soft row gives way, and an open side bounds nothing: neither can be part of a proof.
-    if (qp.softness[i] > 0 || !Number.isFinite(bound)) {
-      v[i] = 0;
-      continue;
-    }
     margin -= v[i] * bound;
     terms += Math.abs(v[i] * bound);
+    reach = Math.max(reach, Math.abs(bound) / qp.rowSize[i]);
+    pull = Math.max(pull, Math.abs(v[i]) * qp.rowSize[i]);
   }
-  combine(step, it, v);
-  let left = 0;
-  for (let j = 0; j < n; j++) left += Math.abs(step[j]);
-  return margin > LEAST_MARGIN * terms && margin > REACH * left * it.size;
+  return left <= CLOSED * pull && margin > LEAST_MARGIN * terms && margin > REACH * left * reach;
 }
 
-/** `out = Gᵀ v`. */
-function combine(out: Float64Array, { qp }: Iterate, v: Float64Array): void {
+/** `out = Gᵀ v` over the rows that can prove anything: a soft row gives way, an open side bounds nothing; they go from v. Returns ‖out‖₁. */
+function combine(out: Float64Array, { qp, lower, upper }: Iterate, v: Float64Array): number {
   out.fill(0);
   for (let i = 0; i < v.length; i++) {
-    if (v[i] !== 0) addRow(out, v[i], qp.G, i * qp.n, qp.from[i], qp.to[i]);
+    if (v[i] === 0) continue;
+    if (qp.softness[i] > 0 || !Number.isFinite(v[i] > 0 ? upper[i] : lower[i])) v[i] = 0;
+    else addRow(out, v[i], qp.G, i * qp.n, qp.from[i], qp.to[i]);
   }
+  let size = 0;
+  for (let j = 0; j < out.length; j++) size += Math.abs(out[j]);
+  return size;
 }

@@ -1,8 +1,8 @@
 import { solveCarefully } from './careful.ts';
-import { createIterate, type Iterate, measure } from './iterate.ts';
+import { createIterate, type Iterate, measure, sizeOf } from './iterate.ts';
 import { OrthogonalFactor } from './orthogonalFactor.ts';
 import { prepareQp } from './prepare.ts';
-import { allFinite, multiplyRows } from './products.ts';
+import { allFinite, largest, multiplyRows } from './products.ts';
 import type { QpResult, QpSolver, QpStatus, QpStructure } from './qp.ts';
 import { BLOCK_PIVOT, rightSide, solveInBlocks } from './rounds.ts';
 import { WorkingFactor } from './workingFactor.ts';
@@ -48,7 +48,7 @@ export function createExactSolver(structure: QpStructure, settings: ExactSetting
     let status = begin(it, q, lower, upper);
     if (status === null) {
       status = solveInBlocks(it, limit, result);
-      if (status === 'failed') {
+      if (status === 'failed' || (status === 'iteration-limit' && settings.iterationLimit === undefined)) {
         factor.clear();
         it.side.fill(0);
         status = solveCarefully(it, orthogonal, limit, result);
@@ -111,6 +111,8 @@ function begin(it: Iterate, q: Float64Array, lower: Float64Array, upper: Float64
   for (let i = 0; i < n; i++) it.x0[i] = -it.x0[i];
   if (!allFinite(it.x0)) return 'failed';
   it.x.set(it.x0);
+  it.sizeQ = largest(q);
+  it.size = sizeOf(it.x, it.sizeQ, qp.sizeH);
   if (crossed) return 'infeasible';
   for (let i = 0; i < m; i++) {
     if (qp.scale[i] === 0 && !(lower[i] <= 0 && upper[i] >= 0)) return 'infeasible';

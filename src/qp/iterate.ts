@@ -36,7 +36,11 @@ export interface Iterate {
   /** The row that was to join last, or the worst of the block. */
   entering: number;
   enteringSide: number;
-  /** ‖x‖∞. */
+  /** max|q|. */
+  sizeQ: number;
+  /** max of |q| and |λᵢ Gᵢ| at the last measurement. */
+  force: number;
+  /** What rounding of a row's value is relative to: see `sizeOf`. */
   size: number;
   /** Relative residual of the equations that the working set makes: what refinement can mend. */
   unsolved: number;
@@ -72,6 +76,8 @@ export function createIterate(qp: PreparedQp, factor: WorkingFactor): Iterate {
     heldObjective: Number.NEGATIVE_INFINITY,
     entering: -1,
     enteringSide: 0,
+    sizeQ: 0,
+    force: 0,
     size: 0,
     unsolved: 0,
     residuals: { stationarity: 0, primal: 0, dual: 0, complementarity: 0, relative: 0 },
@@ -81,17 +87,57 @@ export function createIterate(qp: PreparedQp, factor: WorkingFactor): Iterate {
   };
 }
 
+/** Points below this share of what the forces alone would move count as 0. */
+const NOUGHT = 1e-3;
+
+/**
+ * max|x|, or a thousandth of max(|q|, |λᵢ Gᵢ|) / max|H| if that is more: where forces cancel at x = 0, a bound of 0 would else be asked
+ * for to 1e-13 of a rounding error.
+ */
+export function sizeOf(x: Float64Array, force: number, sizeH: number): number {
+  return Math.max(largest(x), sizeH > 0 ? (NOUGHT * force) / sizeH : 0);
+}
+
 /** `x = x0 − H⁻¹ Gᵀ λ` from the multipliers of the working set. Cost `k n`, or `n²` where that is less. */
 export function updatePrimal(it: Iterate): void {
   const { qp, factor, x, x0 } = it;
   const { n } = qp;
   const { k, rows, mu } = factor;
+  let force = it.sizeQ;
   x.set(x0);
   for (let j = 0; j < k; j++) {
     const i = rows[j];
+    force = Math.max(force, qp.scale[i] * Math.abs(mu[j]) * qp.rowSize[i]);
     addRow(x, -qp.scale[i] * mu[j], qp.Y, i * n, 0, n);
   }
-  it.size = largest(x);
+  it.force = force;
+  it.size = sizeOf(x, force, qp.sizeH);
+}
+
+/** A wrong-signed multiplier of less than this share of `force` is rounding about 0, and counts as 0. */
+const SIGN = 1e-13;
+
+/** Is the multiplier at place j wrong in sign, by no more than rounding? */
+function isNought({ qp, factor, side, equal, force }: Iterate, j: number): boolean {
+  const i = factor.rows[j];
+  const wrong = -side[i] * factor.mu[j];
+  return wrong > 0 && equal[i] === 0 && wrong * qp.scale[i] * qp.rowSize[i] <= SIGN * force;
+}
+
+/** Place of the multiplier that is most wrong in sign, beyond rounding, in scaled rows; −1 when none is. After `measure`. */
+export function findWrongSign(it: Iterate): number {
+  const { factor, side, equal } = it;
+  let worst = -1;
+  let most = 0;
+  for (let j = 0; j < factor.k; j++) {
+    const i = factor.rows[j];
+    const wrong = -side[i] * factor.mu[j];
+    if (wrong > most && equal[i] === 0 && !isNought(it, j)) {
+      most = wrong;
+      worst = j;
+    }
+  }
+  return worst;
 }
 
 /** Multipliers, row values and the residuals of all optimality conditions at `x`, against H and G themselves. */
@@ -100,21 +146,21 @@ export function measure(it: Iterate): void {
   const { n, m, scale, softness, rowSize } = qp;
   const { k, rows, mu, place } = factor;
   multipliers.fill(0);
-  let force = 0;
+  let force = it.sizeQ;
+  for (let j = 0; j < k; j++) force = Math.max(force, scale[rows[j]] * Math.abs(mu[j]) * rowSize[rows[j]]);
+  it.force = force;
   multiplyRows(gradient, qp.H, n, n, qp.fullFrom, qp.fullTo, x);
   for (let i = 0; i < n; i++) gradient[i] += q[i];
   for (let j = 0; j < k; j++) {
     const i = rows[j];
-    const lambda = scale[i] * mu[j];
+    const lambda = isNought(it, j) ? 0 : scale[i] * mu[j];
     multipliers[i] = lambda;
     addRow(gradient, lambda, qp.G, i * n, qp.from[i], qp.to[i]);
-    const size = Math.abs(lambda) * rowSize[i];
-    if (size > force) force = size;
   }
-  const size = largest(x);
+  const size = sizeOf(x, force, qp.sizeH);
   it.size = size;
   const stationarity = largest(gradient);
-  const terms = Math.max(qp.sizeH * size, largest(q), force);
+  const terms = Math.max(qp.sizeH * size, force);
 
   multiplyRows(values, qp.G, m, n, qp.groupFrom, qp.groupTo, x);
   let primal = 0;

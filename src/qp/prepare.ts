@@ -170,7 +170,8 @@ function factor(H: Float64Array, n: number): Float64Array {
   if (fine) return L;
   const smallest = decomposeSymmetric({ rows: n, cols: n, data: H }).values[0];
   const size = H.reduce((most, value) => Math.max(most, Math.abs(value)), 0);
-  const enough = Math.max(0, -smallest) + 1e-8 * size;
+  // Three digits are told: one percent more than it takes.
+  const enough = 1.01 * Math.max(0, -smallest) + 1e-6 * size;
   throw new UnusableQpError(
     {
       key: 'H',

@@ -1,9 +1,10 @@
+import { sizeOf } from './iterate.ts';
 import type { QpResiduals, QpStructure } from './qp.ts';
 
 /**
  * Fills `residuals` for any point and multipliers from the definition of the optimality conditions, by H and G themselves. Each is
  * relative to the size of its own terms: the stationarity to the largest of max|H| max|x|, max|q| and max|λᵢ Gᵢ|; row i to
- * |bound| + max|Gᵢ| max|x| + softnessᵢ |λᵢ|; a wrong-signed multiplier to the largest one.
+ * |bound| + max|Gᵢ| `sizeOf` + softnessᵢ |λᵢ|; a wrong-signed multiplier to the largest one.
  *
  * @param gradient n entries of room. Allocates nothing. Cost `n² + 2 m n`.
  */
@@ -19,11 +20,9 @@ export function measureConditions(
 ): void {
   const n = H.rows;
   const m = G.rows;
-  let size = 0;
   let sizeH = 0;
   let force = 0;
   for (let j = 0; j < n; j++) {
-    size = Math.max(size, Math.abs(x[j]));
     force = Math.max(force, Math.abs(q[j]));
   }
   for (let i = 0; i < n; i++) {
@@ -35,6 +34,12 @@ export function measureConditions(
     gradient[i] = sum;
   }
   let primal = 0;
+  for (let i = 0; i < m; i++) {
+    let most = 0;
+    for (let j = 0; j < n; j++) most = Math.max(most, Math.abs(G.data[i * n + j]));
+    force = Math.max(force, most * Math.abs(multipliers[i]));
+  }
+  const size = sizeOf(x, force, sizeH);
   let dual = 0;
   let complementarity = 0;
   let relative = 0;
@@ -49,7 +54,6 @@ export function measureConditions(
       rowSize = Math.max(rowSize, Math.abs(g));
       gradient[j] += g * lambda;
     }
-    force = Math.max(force, rowSize * Math.abs(lambda));
     largest = Math.max(largest, Math.abs(lambda));
     const held = value - softness[i] * lambda;
     const violation = Math.max(0, held - upper[i], lower[i] - held);

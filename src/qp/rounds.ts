@@ -1,5 +1,5 @@
 import { findCertificate } from './certificate.ts';
-import { type Iterate, measure, refine, updatePrimal } from './iterate.ts';
+import { findWrongSign, type Iterate, measure, refine, updatePrimal } from './iterate.ts';
 import { dot, multiplyRows } from './products.ts';
 import type { QpResult, QpStatus } from './qp.ts';
 
@@ -19,6 +19,8 @@ export const BLOCK_PIVOT = 1e-7;
 const DEPENDENT = 1e-9;
 /** A dependent row violated by less than this share of its terms is consistent to within rounding. */
 export const CONSISTENT = 1e-9;
+/** A round that raises the dual objective by less than this share of it is a stall. */
+const RAISE = 1e-14;
 /** Rates of multipliers below this share of the largest are rounding. */
 const LEAST_RATE = 1e-11;
 
@@ -43,7 +45,7 @@ export function solveInBlocks(it: Iterate, limit: number, result: QpResult): QpS
     result.iterations++;
     factor.solve();
     if (!approach(it)) continue;
-    if (!(it.heldObjective > best) && ++stalls > 10) return 'failed';
+    if (!(it.heldObjective > best + RAISE * Math.abs(best)) && ++stalls > 10) return 'failed';
     best = it.heldObjective;
     updatePrimal(it);
     multiplyRows(it.values, qp.G, qp.m, qp.n, qp.groupFrom, qp.groupTo, it.x);
@@ -52,7 +54,7 @@ export function solveInBlocks(it: Iterate, limit: number, result: QpResult): QpS
       measure(it);
       if (it.residuals.relative > POLISHED) {
         refine(it, POLISHED);
-        if (hasWrongSign(it) || findViolated(it) > 0) return 'failed';
+        if (findWrongSign(it) >= 0 || findViolated(it) > 0) return 'failed';
       }
       return it.residuals.relative <= GOOD ? 'optimal' : 'failed';
     }
@@ -151,38 +153,32 @@ function leaveUnmoved(it: Iterate): void {
     leave[j] = equal[i] === 0 && held[j] === 0 && side[i] * mu[j] < 0 && i !== it.entering ? 1 : 0;
     count += leave[j];
   }
-  for (let j = 0; j < k; j++) {
-    const i = rows[j];
-    if (count === 0 && equal[i] === 0 && held[j] === 0 && i !== it.entering) leave[j] = 1;
-    if (leave[j] === 1) side[i] = 0;
+  if (count === 0) {
+    for (let j = 0; j < k; j++) {
+      leave[j] = equal[rows[j]] === 0 && held[j] === 0 && rows[j] !== it.entering ? 1 : 0;
+      count += leave[j];
+    }
   }
+  if (count === 0) {
+    // Alone, and still pushed the wrong way: its violation is rounding, which the end of the solve judges.
+    it.exempt[it.entering] = 1;
+    leave[factor.place[it.entering]] = 1;
+  }
+  for (let j = 0; j < k; j++) if (leave[j] === 1) side[rows[j]] = 0;
   factor.removeMarked(leave);
-}
-
-export function hasWrongSign({ factor, side, equal }: Iterate): boolean {
-  for (let j = 0; j < factor.k; j++) {
-    const i = factor.rows[j];
-    if (equal[i] === 0 && side[i] * factor.mu[j] < 0) return true;
-  }
-  return false;
 }
 
 /** Lists the rows outside the working set that are violated beyond rounding, with their signed, scaled excess. */
 export function findViolated(it: Iterate): number {
-  const { qp, factor, lower, upper, values, exempt, candidates, gaps, x } = it;
+  const { qp, factor, lower, upper, values, exempt, candidates, gaps, size } = it;
   const { m, scale, rowSize } = qp;
   const { place } = factor;
-  let size = -1;
   let count = 0;
   for (let i = 0; i < m; i++) {
     const over = values[i] - upper[i];
     const under = lower[i] - values[i];
     const excess = Math.max(over, under);
     if (!(excess > 0) || place[i] >= 0 || exempt[i] === 1 || scale[i] === 0) continue;
-    if (size < 0) {
-      size = 0;
-      for (let j = 0; j < x.length; j++) size = Math.max(size, Math.abs(x[j]));
-    }
     const bound = over > under ? upper[i] : lower[i];
     if (excess <= FEASIBLE * (Math.abs(bound) + rowSize[i] * size)) continue;
     candidates[count] = i;

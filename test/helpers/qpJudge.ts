@@ -23,7 +23,8 @@ export const dataOf = ({ q, lower, upper }: Program) =>
 /**
  * The optimality conditions of `½ xᵀHx + qᵀx + ½ Σ e²/softness`, `lower ≤ G x + e ≤ upper`, e = −softness λ, from their definition:
  * the worst of stationarity, violation, wrong-signed multiplier and complementarity, each divided by the size of its own terms:
- * the stationarity by its largest sum of absolute values; row i by |bound| + max|Gᵢ| max|x| + |e|; multipliers by the largest.
+ * the stationarity by its largest sum of absolute values; row i by |bound| + max|Gᵢ| max|x| + |e|, where
+ * max|x| counts for no less than a thousandth of max(|q|, |λᵢ Gᵢ|) / max|H|, so that 0 need not be met to digits of a rounding error; multipliers by the largest.
  */
 export function judge(program: Program, x: ArrayLike<number>, lambda: ArrayLike<number>): number {
   const { H, q, G, lower, upper } = program;
@@ -45,7 +46,8 @@ export function judge(program: Program, x: ArrayLike<number>, lambda: ArrayLike<
   }
   let worst = stationarity === 0 ? 0 : stationarity / force;
   let largest = 0;
-  let size = 0;
+  const pushes = G.map((row, i) => Math.abs(lambda[i]) * Math.max(...row.map(Math.abs)));
+  let size = (1e-3 * Math.max(...q.map(Math.abs), ...pushes)) / Math.max(...H.flat().map(Math.abs));
   for (let j = 0; j < q.length; j++) size = worse(size, Math.abs(x[j]));
   for (let i = 0; i < G.length; i++) largest = worse(largest, Math.abs(lambda[i]));
   for (let i = 0; i < G.length; i++) {
@@ -94,14 +96,15 @@ export function proves({ G, lower, upper, softness, q }: Program, v: ArrayLike<n
     margin -= v[i] * (v[i] > 0 ? upper[i] : lower[i]);
   }
   if (!(margin > 0)) return false;
+  let left = 0;
+  let terms = 0;
   for (let j = 0; j < q.length; j++) {
     let sum = 0;
-    let terms = 0;
     for (let i = 0; i < G.length; i++) {
       sum += G[i][j] * v[i];
-      terms += Math.abs(G[i][j] * v[i]);
+      terms = worse(terms, Math.abs(G[i][j] * v[i]));
     }
-    if (!(Math.abs(sum) <= 1e-12 * terms)) return false;
+    left = worse(left, Math.abs(sum));
   }
-  return true;
+  return left <= 1e-12 * terms;
 }
