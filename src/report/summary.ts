@@ -51,12 +51,7 @@ export function writeSummary(
   // The hazards take one line, the prompt another.
   const forCautions = Math.max(2, SCREEN.rows - 2 - used);
   sections.splice(6, 0, ['Cautions', describeCautions(cautions, forCautions)]);
-  const lines = [
-    cut(
-      `${result.title}: ${result.plant.name}, sample time ${withUnit(result.sampleTime, 's')}`,
-      SCREEN.columns,
-    ),
-  ];
+  const lines = [cut(`${titleOf(result)}, sample time ${withUnit(result.sampleTime, 's')}`, SCREEN.columns)];
   for (const [name, entries] of sections) {
     entries.forEach((entry, i) => {
       const label = (i === 0 ? name : '').padEnd(LABEL);
@@ -141,7 +136,8 @@ function describeCost(runs: readonly LoopRun[]): string[] {
   return runs.map(({ name, record }, i) => {
     const cost = formatFigure(record.cost.total);
     const ratio = i > 0 && own > 0 ? `, ${formatFigure(record.cost.total / own)} times` : '';
-    return `${cost}  ${LABELS[name]}${ratio}${record.diverged ? ', DIVERGED' : ''}`;
+    const tracking = `tracking ${formatFigure(record.cost.tracking)}`;
+    return `${cost}  ${LABELS[name]}${ratio} (${tracking})${record.diverged ? ', DIVERGED' : ''}`;
   });
 }
 
@@ -182,4 +178,9 @@ function wrap(text: string, columns: number): string[] {
     } else line = line === '' ? word : `${line} ${word}`;
   }
   return [...lines, line];
+}
+
+/** The study's title and the plant's name, once where they are the same. */
+function titleOf({ title, plant }: StudyResult): string {
+  return title === plant.name ? title : `${title}: ${plant.name}`;
 }

@@ -38,7 +38,7 @@ const tracking = (over: Partial<TrackingReport> = {}): TrackingReport =>
 const run = (name: LoopRun['name'], total: number, limits: LimitReport[], tracks = [tracking()]): LoopRun =>
   ({
     name,
-    record: { steps: 500, diverged: false, cost: { total } },
+    record: { steps: 500, diverged: false, cost: { total, tracking: total / 2 } },
     report: { limits, tracking: tracks, notOptimal: 2, iterations: { median: 2, q95: 5, worst: 11 } },
   }) as unknown as LoopRun;
 
@@ -66,14 +66,19 @@ const caution = (severity: Caution['severity'], sentence = 'Something is so.'): 
 const files = ['out/snap-through: report.html, charts/, export/', 'experiment 0.4 s, fit 1.2 s'];
 
 describe('the closing summary', () => {
+  it('names a study without a title by its plant alone, once', () => {
+    const [first] = writeSummary(result({ title: 'snap-through' }), [], files).split('\n');
+    expect(first).toBe('snap-through, sample time 0.005 s');
+  });
+
   it('answers every question of a review in words and figures with units (worked by hand)', () => {
     const text = writeSummary(result(), [caution('warning'), caution('note')], files);
     expect(text).toContain("helps: error 0.412 of plain linear's, better up to 60 steps (0.3 s)");
     expect(text).toContain('trusted to 10 % for 42 steps (0.21 s); horizon 30 steps (0.15 s)');
     expect(text).toMatch(/position +0\.00123 m +0\.0199 m +4\.2 % +0\.31 s +1\.2e-7 m\n/);
     expect(text).toMatch(/velocity +3 +0\.0213 m\/s +3\.55 % +0\.015 s +1\.2 s\n/);
-    expect(text).toContain('37  plain linear regression, 3 times');
-    expect(text).toContain('247  linearised at the operating point, 20 times');
+    expect(text).toContain('37  plain linear regression, 3 times (tracking 18.5)');
+    expect(text).toContain('247  linearised at the operating point, 20 times (tracking 123)');
     expect(text).toContain('2 of 500 not optimal; iterations median 2, 95 % 5, worst 11');
     expect(text).toContain('met: worst excess 3.55 %, allowed 5 %');
     expect(text).toContain('0 errors, 1 warning, 1 note');

@@ -86,13 +86,14 @@ function aboutCost({ runs }: StudyResult): VerdictLine[] {
     const astray = run.record.diverged ? ', and diverged' : '';
     return `${CONTROLLER_WORDS[run.name]} costs ${cost(run)} (${formatFigure(ratio)} times${astray})`;
   });
+  const tracking = runs.map(({ record }) => formatFigure(record.cost.tracking));
   const beaten = rivals.every(({ record }) => record.diverged || record.cost.total > own.record.cost.total);
   const beside = compared.length > 0 ? `; under the same scenario ${list(compared)}` : '';
   return [
     {
       standing: rivals.length === 0 ? 'open' : beaten ? 'good' : 'bad',
       about: 'Cost',
-      sentence: `The closed loop of ${CONTROLLER_WORDS.lifted} costs ${cost(own)}${beside}.`,
+      sentence: `The closed loop of ${CONTROLLER_WORDS.lifted} costs ${cost(own)}${beside}. Of this, tracking errors cost ${list(tracking)}; the rest is limit excess and input moves.`,
     },
   ];
 }
