@@ -9,6 +9,11 @@ import { ACCEPTED, CONSISTENT, findViolated, findWorst } from './rounds.ts';
 const ROUNDING = 2e-16;
 /** A row is dependent when less than this, times the square root of the condition of H, is left of it. */
 const DEPENDENT = 1e-14;
+/**
+ * When less than this is left of a row and no other can make room for it, infeasibility may be what is met; the certificate, checked by
+ * its definition, tells.
+ */
+const SUSPECT = 1e-4;
 /** Rates of multipliers below this share of the largest are rounding. */
 const LEAST_RATE = 1e-12;
 /** A round must raise the dual objective by more than this share of it, or it counts as a stall. */
@@ -52,11 +57,9 @@ export function solveCarefully(
     // Among stalls the smallest index goes first, so that no working set comes round again for ever.
     const worst = stalls > qp.m + 10 ? 0 : findWorst(it, count);
     const row = it.candidates[worst];
-    const outcome = join(it, orthogonal, least, row, it.gaps[worst]);
+    const outcome = join(it, orthogonal, least, row, it.gaps[worst], result.certificate);
     if (outcome === 'exempt') exempt[row] = 1;
-    if (outcome === 'infeasible') {
-      return findCertificate(it, orthogonal, result.certificate) ? 'infeasible' : 'failed';
-    }
+    if (outcome === 'infeasible') return 'infeasible';
   }
   return 'iteration-limit';
 }
@@ -95,6 +98,7 @@ function join(
   least: number,
   row: number,
   gapSigned: number,
+  certificate: Float64Array,
 ): Joined {
   const { qp, factor, side, equal, direction } = it;
   const { mu, rows } = factor;
@@ -119,11 +123,14 @@ function join(
         blocking = j;
       }
     }
-    const full = left > least ? gap / pivot : Number.POSITIVE_INFINITY;
-    if (blocking < 0 && full === Number.POSITIVE_INFINITY) {
+    let full = left > least ? gap / pivot : Number.POSITIVE_INFINITY;
+    if (blocking < 0 && left < SUSPECT) {
+      if (gap <= CONSISTENT * terms && full === Number.POSITIVE_INFINITY) return 'exempt';
       it.entering = row;
       it.enteringSide = sign;
-      return gap <= CONSISTENT * terms ? 'exempt' : 'infeasible';
+      if (findCertificate(it, orthogonal, certificate)) return 'infeasible';
+      // Neither dependent to rounding nor proved infeasible: taken at its word, the residuals judge in the end.
+      full = gap / pivot;
     }
     const step = Math.min(full, partial);
     for (let j = 0; j < factor.k; j++) mu[j] -= sign * step * direction[j];

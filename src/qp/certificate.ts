@@ -52,7 +52,7 @@ export function findCertificate(it: Iterate, orthogonal: OrthogonalFactor | null
     const bound = v[i] > 0 ? upper[i] : lower[i];
     margin -= v[i] * bound;
     terms += Math.abs(v[i] * bound);
-    reach = Math.max(reach, Math.abs(bound) / qp.rowSize[i]);
+    if (qp.rowSize[i] > 0) reach = Math.max(reach, Math.abs(bound) / qp.rowSize[i]);
     pull = Math.max(pull, Math.abs(v[i]) * qp.rowSize[i]);
   }
   return left <= CLOSED * pull && margin > LEAST_MARGIN * terms && margin > REACH * left * reach;

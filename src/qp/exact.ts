@@ -112,7 +112,7 @@ function begin(it: Iterate, q: Float64Array, lower: Float64Array, upper: Float64
   if (!allFinite(it.x0)) return 'failed';
   it.x.set(it.x0);
   it.sizeQ = largest(q);
-  it.size = sizeOf(it.x, it.sizeQ, qp.sizeH);
+  it.size = sizeOf(it.x, n > 0 ? it.sizeQ / qp.sizeH : 0);
   if (crossed) return 'infeasible';
   for (let i = 0; i < m; i++) {
     if (qp.scale[i] === 0 && !(lower[i] <= 0 && upper[i] >= 0)) return 'infeasible';

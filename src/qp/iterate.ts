@@ -87,15 +87,27 @@ export function createIterate(qp: PreparedQp, factor: WorkingFactor): Iterate {
   };
 }
 
-/** Points below this share of what the forces alone would move count as 0. */
+/** Points below this share of where the data live count as 0. */
 const NOUGHT = 1e-3;
 
 /**
- * max|x|, or a thousandth of max(|q|, |λᵢ Gᵢ|) / max|H| if that is more: where forces cancel at x = 0, a bound of 0 would else be asked
- * for to 1e-13 of a rounding error.
+ * max|x|, or a thousandth of `reach` if that is more, `reach` being the largest of max|q| / max|H| and |bound| / max|Gᵢ| over the
+ * active rows: where forces cancel at x = 0, a bound of 0 would else be asked for to 1e-13 of a rounding error.
  */
-export function sizeOf(x: Float64Array, force: number, sizeH: number): number {
-  return Math.max(largest(x), sizeH > 0 ? (NOUGHT * force) / sizeH : 0);
+export function sizeOf(x: Float64Array, reach: number): number {
+  return Math.max(largest(x), NOUGHT * reach);
+}
+
+/** `reach` of the present working set. */
+function reachOf({ qp, factor, side, lower, upper, sizeQ }: Iterate): number {
+  let reach = qp.sizeH > 0 ? sizeQ / qp.sizeH : 0;
+  for (let j = 0; j < factor.k; j++) {
+    const i = factor.rows[j];
+    if (qp.rowSize[i] > 0) {
+      reach = Math.max(reach, Math.abs(side[i] > 0 ? upper[i] : lower[i]) / qp.rowSize[i]);
+    }
+  }
+  return reach;
 }
 
 /** `x = x0 − H⁻¹ Gᵀ λ` from the multipliers of the working set. Cost `k n`, or `n²` where that is less. */
@@ -103,15 +115,12 @@ export function updatePrimal(it: Iterate): void {
   const { qp, factor, x, x0 } = it;
   const { n } = qp;
   const { k, rows, mu } = factor;
-  let force = it.sizeQ;
   x.set(x0);
   for (let j = 0; j < k; j++) {
     const i = rows[j];
-    force = Math.max(force, qp.scale[i] * Math.abs(mu[j]) * qp.rowSize[i]);
     addRow(x, -qp.scale[i] * mu[j], qp.Y, i * n, 0, n);
   }
-  it.force = force;
-  it.size = sizeOf(x, force, qp.sizeH);
+  it.size = sizeOf(x, reachOf(it));
 }
 
 /** A wrong-signed multiplier of less than this share of `force` is rounding about 0, and counts as 0. */
@@ -157,7 +166,7 @@ export function measure(it: Iterate): void {
     multipliers[i] = lambda;
     addRow(gradient, lambda, qp.G, i * n, qp.from[i], qp.to[i]);
   }
-  const size = sizeOf(x, force, qp.sizeH);
+  const size = sizeOf(x, reachOf(it));
   it.size = size;
   const stationarity = largest(gradient);
   const terms = Math.max(qp.sizeH * size, force);

@@ -34,12 +34,16 @@ export function measureConditions(
     gradient[i] = sum;
   }
   let primal = 0;
+  let reach = sizeH > 0 ? force / sizeH : 0;
   for (let i = 0; i < m; i++) {
     let most = 0;
     for (let j = 0; j < n; j++) most = Math.max(most, Math.abs(G.data[i * n + j]));
     force = Math.max(force, most * Math.abs(multipliers[i]));
+    const bound = multipliers[i] > 0 ? upper[i] : lower[i];
+    if (multipliers[i] !== 0 && most > 0 && Number.isFinite(bound))
+      reach = Math.max(reach, Math.abs(bound) / most);
   }
-  const size = sizeOf(x, force, sizeH);
+  const size = sizeOf(x, reach);
   let dual = 0;
   let complementarity = 0;
   let relative = 0;

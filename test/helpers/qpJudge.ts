@@ -24,7 +24,8 @@ export const dataOf = ({ q, lower, upper }: Program) =>
  * The optimality conditions of `½ xᵀHx + qᵀx + ½ Σ e²/softness`, `lower ≤ G x + e ≤ upper`, e = −softness λ, from their definition:
  * the worst of stationarity, violation, wrong-signed multiplier and complementarity, each divided by the size of its own terms:
  * the stationarity by its largest sum of absolute values; row i by |bound| + max|Gᵢ| max|x| + |e|, where
- * max|x| counts for no less than a thousandth of max(|q|, |λᵢ Gᵢ|) / max|H|, so that 0 need not be met to digits of a rounding error; multipliers by the largest.
+ * max|x| counts for no less than a thousandth of max|q| / max|H| and of |bound| / max|Gᵢ| of rows with a multiplier, so that 0 need not
+ * be met to digits of a rounding error; multipliers by the largest.
  */
 export function judge(program: Program, x: ArrayLike<number>, lambda: ArrayLike<number>): number {
   const { H, q, G, lower, upper } = program;
@@ -46,8 +47,13 @@ export function judge(program: Program, x: ArrayLike<number>, lambda: ArrayLike<
   }
   let worst = stationarity === 0 ? 0 : stationarity / force;
   let largest = 0;
-  const pushes = G.map((row, i) => Math.abs(lambda[i]) * Math.max(...row.map(Math.abs)));
-  let size = (1e-3 * Math.max(...q.map(Math.abs), ...pushes)) / Math.max(...H.flat().map(Math.abs));
+  const most = (row: readonly number[]) => Math.max(0, ...row.map(Math.abs));
+  let size = (1e-3 * most(q)) / most(H.flat());
+  for (let i = 0; i < G.length; i++) {
+    const bound = lambda[i] > 0 ? upper[i] : lower[i];
+    if (lambda[i] !== 0 && most(G[i]) > 0 && Number.isFinite(bound))
+      size = worse(size, (1e-3 * Math.abs(bound)) / most(G[i]));
+  }
   for (let j = 0; j < q.length; j++) size = worse(size, Math.abs(x[j]));
   for (let i = 0; i < G.length; i++) largest = worse(largest, Math.abs(lambda[i]));
   for (let i = 0; i < G.length; i++) {

@@ -214,6 +214,37 @@ describe('infeasible programs', () => {
     }
   });
 
+  it('and feasible ones, as shifted bounds make them at random: 900 programs, each optimal with the conditions met or infeasible with a proof', () => {
+    const count = { optimal: 0, infeasible: 0 };
+    for (const kind of KINDS) {
+      for (let i = 0; i < 100; i++) {
+        const { program } = drawHostile(deriveSeed(29, kind, i), kind, 40);
+        const random = createRandom(deriveSeed(30, kind, i));
+        const spread = 10 ** (-3 * random());
+        const shifts = program.G.map((_, row) => {
+          const bound = Number.isFinite(program.upper[row]) ? program.upper[row] : program.lower[row];
+          return Number.isFinite(bound) ? spread * bound * drawNormal(random) : 0;
+        });
+        const shifted: Program = {
+          ...program,
+          lower: program.lower.map((l, row) => l + shifts[row]),
+          upper: program.upper.map((u, row) => u + shifts[row]),
+        };
+        const result = solve(shifted);
+        if (result.status === 'optimal') {
+          count.optimal++;
+          expect(judge(shifted, result.x, result.multipliers)).toBeLessThan(1e-10);
+        } else {
+          expect(result.status).toBe('infeasible');
+          count.infeasible++;
+          expect(proves(shifted, result.certificate)).toBe(true);
+        }
+      }
+    }
+    // Both verdicts must really be met with.
+    expect(Math.min(count.optimal, count.infeasible)).toBeGreaterThan(100);
+  });
+
   it('become feasible when the row that does not fit is made soft', () => {
     const program: Program = {
       H: [
