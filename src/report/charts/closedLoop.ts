@@ -14,7 +14,7 @@ import {
   shownOutputs,
   timesOf,
 } from './loopSignals.ts';
-import { stackPanels } from './panels.ts';
+import { stackPanels, timeAxis } from './panels.ts';
 import { column, lineSeries, paddedRange } from './series.ts';
 
 const OUTPUT: SeriesStyle = {
@@ -110,13 +110,7 @@ export function closedLoopChart(result: StudyResult): ChartSpec {
     height: Math.max(450, 110 + 150 * Object.keys(panels).length),
     series,
     axes: {
-      x: {
-        type: 'linear',
-        position: 'bottom',
-        min: 0,
-        max: Number(end.toPrecision(6)) || 1,
-        title: 'time, s',
-      },
+      x: timeAxis(end),
       ...stackPanels(panels),
     },
     marks,

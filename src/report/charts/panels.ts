@@ -25,3 +25,14 @@ export function stackPanels(panels: Readonly<Record<string, AxisSpec>>): Record<
     ]),
   );
 }
+
+/** The time axis of a run that takes `end` seconds. */
+export function timeAxis(end: number): AxisSpec {
+  return {
+    type: 'linear',
+    position: 'bottom',
+    min: 0,
+    max: Number(end.toPrecision(6)) || 1,
+    title: 'time, s',
+  };
+}

@@ -5,7 +5,7 @@ import { thinSeries } from '../thin.ts';
 import { axisTitle, formatFigure, list, withUnit } from '../words.ts';
 import { LIMIT_LABELS, limitMarks } from './limits.ts';
 import { fineOutput, isLed, referenceSeries, shownOutputs } from './loopSignals.ts';
-import { stackPanels } from './panels.ts';
+import { stackPanels, timeAxis } from './panels.ts';
 import { lineSeries, paddedRange } from './series.ts';
 
 /** The lifted controller beside the same controller on the simpler predictors: outputs under the same scenario. */
@@ -55,13 +55,7 @@ export function rivalsChart(result: StudyResult): ChartSpec {
     height: Math.max(450, 110 + 190 * Object.keys(panels).length),
     series,
     axes: {
-      x: {
-        type: 'linear',
-        position: 'bottom',
-        min: 0,
-        max: Number(longest.toPrecision(6)) || 1,
-        title: 'time, s',
-      },
+      x: timeAxis(longest),
       ...stackPanels(panels),
     },
     marks,

@@ -5,6 +5,7 @@ import { COLOURS, type Marker } from '../style.ts';
 import { thinSeries } from '../thin.ts';
 import { formatFigure, plural } from '../words.ts';
 import { timesOf } from './loopSignals.ts';
+import { timeAxis } from './panels.ts';
 import { lineSeries, pointSeries } from './series.ts';
 
 const AXES = { x: 'x', y: 'y' } as const;
@@ -61,13 +62,7 @@ export function solverChart({ runs }: StudyResult): ChartSpec {
     height: 450,
     series,
     axes: {
-      x: {
-        type: 'linear',
-        position: 'bottom',
-        min: 0,
-        max: Number(end.toPrecision(6)) || 1,
-        title: 'time, s',
-      },
+      x: timeAxis(end),
       y: { type: 'linear', position: 'left', min: 0, max: 1.12 * most, title: 'iterations of one solve' },
     },
     marks: [],
