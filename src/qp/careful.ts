@@ -68,7 +68,7 @@ export function solveCarefully(
 function settle(it: Iterate, orthogonal: OrthogonalFactor): void {
   const { qp, factor, x, side, multipliers, right, step, gradient } = it;
   const { n, scale, softness } = qp;
-  measure(it);
+  measure(it, false);
   for (let pass = 0; pass < 8; pass++) {
     const before = it.unsolved;
     if (before <= ROUNDING) return;
@@ -84,7 +84,7 @@ function settle(it: Iterate, orthogonal: OrthogonalFactor): void {
     for (let j = 0; j < n; j++) {
       for (let i = 0; i <= j; i++) x[i] += qp.Linv[j * n + i] * step[j];
     }
-    measure(it);
+    measure(it, false);
     if (pass > 0 && !(it.unsolved <= 0.5 * before)) return;
   }
 }

@@ -2,7 +2,7 @@ import { solveCarefully } from './careful.ts';
 import { createIterate, type Iterate, measure, sizeOf } from './iterate.ts';
 import { OrthogonalFactor } from './orthogonalFactor.ts';
 import { prepareQp } from './prepare.ts';
-import { allFinite, largest, multiplyRows } from './products.ts';
+import { allFinite, copyInto, largest, multiplyRows } from './products.ts';
 import type { QpResult, QpSolver, QpStatus, QpStructure } from './qp.ts';
 import { BLOCK_PIVOT, rightSide, solveInBlocks } from './rounds.ts';
 import { WorkingFactor } from './workingFactor.ts';
@@ -110,7 +110,7 @@ function begin(it: Iterate, q: Float64Array, lower: Float64Array, upper: Float64
   multiplyRows(it.x0, qp.Hinv, n, n, qp.fullFrom, qp.fullTo, q);
   for (let i = 0; i < n; i++) it.x0[i] = -it.x0[i];
   if (!allFinite(it.x0)) return 'failed';
-  it.x.set(it.x0);
+  copyInto(it.x, it.x0);
   it.sizeQ = largest(q);
   it.size = sizeOf(it.x, n > 0 ? it.sizeQ / qp.sizeH : 0);
   if (crossed) return 'infeasible';
@@ -145,5 +145,5 @@ function begin(it: Iterate, q: Float64Array, lower: Float64Array, upper: Float64
 function finish(it: Iterate, status: QpStatus): void {
   if (status === 'optimal') return;
   if (status === 'failed' && !allFinite(it.x)) it.x.fill(Number.NaN);
-  measure(it);
+  measure(it, false);
 }

@@ -1,5 +1,5 @@
 import type { PreparedQp } from './prepare.ts';
-import { addRow, dot, largest, multiplyRows } from './products.ts';
+import { addRow, copyInto, dot, largest, multiplyRows, subtractRows } from './products.ts';
 import type { QpResiduals } from './qp.ts';
 import type { WorkingFactor } from './workingFactor.ts';
 
@@ -110,17 +110,15 @@ function reachOf({ qp, factor, side, lower, upper, sizeQ }: Iterate): number {
   return reach;
 }
 
-/** `x = x0 − H⁻¹ Gᵀ λ` from the multipliers of the working set. Cost `k n`, or `n²` where that is less. */
+/** `x = x0 − (H⁻¹ Gᵀ) λ` from the multipliers of the working set, and the values of all rows. Cost `k n` and the product with G. */
 export function updatePrimal(it: Iterate): void {
   const { qp, factor, x, x0 } = it;
-  const { n } = qp;
+  const { n, m, scale, Y } = qp;
   const { k, rows, mu } = factor;
-  x.set(x0);
-  for (let j = 0; j < k; j++) {
-    const i = rows[j];
-    addRow(x, -qp.scale[i] * mu[j], qp.Y, i * n, 0, n);
-  }
+  copyInto(x, x0);
+  subtractRows(x, Y, n, rows, k, scale, mu);
   it.size = sizeOf(x, reachOf(it));
+  multiplyRows(it.values, qp.G, m, n, qp.groupFrom, qp.groupTo, x);
 }
 
 /** A wrong-signed multiplier of less than this share of `force` is rounding about 0, and counts as 0. */
@@ -149,12 +147,15 @@ export function findWrongSign(it: Iterate): number {
   return worst;
 }
 
-/** Multipliers, row values and the residuals of all optimality conditions at `x`, against H and G themselves. */
-export function measure(it: Iterate): void {
+/**
+ * Multipliers and the residuals of all optimality conditions at `x` and `values`, against H and G themselves.
+ * @param fresh whether `values` are those of `x`; else they are computed.
+ */
+export function measure(it: Iterate, fresh: boolean): void {
   const { qp, factor, x, q, lower, upper, multipliers, gradient, values, residuals } = it;
   const { n, m, scale, softness, rowSize } = qp;
   const { k, rows, mu, place } = factor;
-  multipliers.fill(0);
+  for (let i = 0; i < m; i++) multipliers[i] = 0;
   let force = it.sizeQ;
   for (let j = 0; j < k; j++) force = Math.max(force, scale[rows[j]] * Math.abs(mu[j]) * rowSize[rows[j]]);
   it.force = force;
@@ -171,7 +172,7 @@ export function measure(it: Iterate): void {
   const stationarity = largest(gradient);
   const terms = Math.max(qp.sizeH * size, force);
 
-  multiplyRows(values, qp.G, m, n, qp.groupFrom, qp.groupTo, x);
+  if (!fresh) multiplyRows(values, qp.G, m, n, qp.groupFrom, qp.groupTo, x);
   let primal = 0;
   let dual = 0;
   let complementarity = 0;
@@ -235,7 +236,7 @@ export function refine(it: Iterate, goal: number): void {
       mu[j] += right[j];
       addRow(x, -scale[rows[j]] * right[j], Y, rows[j] * n, 0, n);
     }
-    measure(it);
+    measure(it, false);
     if (!(it.unsolved <= 0.5 * before)) return;
   }
 }

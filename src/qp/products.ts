@@ -34,6 +34,37 @@ export function addRow(
   for (let i = from; i < to; i++) out[i] += alpha * M[at + i];
 }
 
+/** `out −= Σⱼ scale[rows[j]] mu[j] M[rows[j]]` over `k` rows of `cols` entries, four a pass. */
+export function subtractRows(
+  out: Float64Array,
+  M: Float64Array,
+  cols: number,
+  rows: Int32Array,
+  k: number,
+  scale: Float64Array,
+  mu: Float64Array,
+): void {
+  const whole = k & ~3;
+  for (let j = 0; j < whole; j += 4) {
+    const ra = rows[j];
+    const rb = rows[j + 1];
+    const rc = rows[j + 2];
+    const rd = rows[j + 3];
+    const wa = scale[ra] * mu[j];
+    const wb = scale[rb] * mu[j + 1];
+    const wc = scale[rc] * mu[j + 2];
+    const wd = scale[rd] * mu[j + 3];
+    const a = ra * cols;
+    const b = rb * cols;
+    const c = rc * cols;
+    const d = rd * cols;
+    for (let i = 0; i < cols; i++) {
+      out[i] -= wa * M[a + i] + wb * M[b + i] + (wc * M[c + i] + wd * M[d + i]);
+    }
+  }
+  for (let j = whole; j < k; j++) addRow(out, -scale[rows[j]] * mu[j], M, rows[j] * cols, 0, cols);
+}
+
 /**
  * `out = M v` for M rows × cols, whose rows are zero outside `[groupFrom[g], groupTo[g])`, g = ⌊row / 4⌋: four rows a pass
  * share each entry of `v`.
@@ -77,12 +108,16 @@ export function multiplyRows(
   }
 }
 
+/** `out = v`; for short arrays faster than the built-in. */
+export function copyInto(out: Float64Array, v: Float64Array): void {
+  for (let i = 0; i < v.length; i++) out[i] = v[i];
+}
+
 /** Largest |v[i]|; NaN if one entry is NaN. */
 export function largest(v: Float64Array): number {
   let most = 0;
   for (let i = 0; i < v.length; i++) {
-    const size = Math.abs(v[i]);
-    if (!(size <= most)) most = size;
+    most = Math.max(most, Math.abs(v[i]));
   }
   return most;
 }

@@ -1,18 +1,20 @@
 import { findCertificate } from './certificate.ts';
 import { findWrongSign, type Iterate, measure, refine, updatePrimal } from './iterate.ts';
-import { dot, multiplyRows } from './products.ts';
+import { dot } from './products.ts';
 import type { QpResult, QpStatus } from './qp.ts';
 
 /** A solve is called optimal when every condition holds to this, relative to the size of its own terms. */
 export const ACCEPTED = 1e-10;
 /** Residuals above this are refined before a solve ends. */
-const POLISHED = 1e-13;
+const POLISHED = 2e-13;
 /** The fast route's answer is taken when it is as good as this, else the careful route has the last word. */
 const GOOD = 5e-13;
 /** A row counts as violated beyond this share of the size of its terms. */
-const FEASIBLE = 2.5e-13;
+const FEASIBLE = 3e-13;
 /** Violated rows above this share of the worst join the working set together. */
-const BLOCK_SHARE = 0.1;
+const BLOCK_SHARE = 0.3;
+/** Of the warm start's rows with wrong signs, those above this share of the worst leave together. */
+const DROP_SHARE = 0.3;
 /** Least pivot with which a row joins in a block. */
 export const BLOCK_PIVOT = 1e-7;
 /** Below this pivot a row counts as dependent on the working set until the certificate says otherwise. */
@@ -37,7 +39,7 @@ export function rightSide({ qp, x0, lower, upper }: Iterate, row: number, side: 
  * does not is rounding, and some of these are left to the careful route (`failed`).
  */
 export function solveInBlocks(it: Iterate, limit: number, result: QpResult): QpStatus {
-  const { qp, factor } = it;
+  const { factor } = it;
   let best = Number.NEGATIVE_INFINITY;
   let stalls = 0;
   it.heldObjective = Number.NEGATIVE_INFINITY;
@@ -48,10 +50,9 @@ export function solveInBlocks(it: Iterate, limit: number, result: QpResult): QpS
     if (!(it.heldObjective > best + RAISE * Math.abs(best)) && ++stalls > 10) return 'failed';
     best = it.heldObjective;
     updatePrimal(it);
-    multiplyRows(it.values, qp.G, qp.m, qp.n, qp.groupFrom, qp.groupTo, it.x);
     const count = findViolated(it);
     if (count === 0) {
-      measure(it);
+      measure(it, true);
       if (it.residuals.relative > POLISHED) {
         refine(it, POLISHED);
         if (findWrongSign(it) >= 0 || findViolated(it) > 0) return 'failed';
@@ -132,9 +133,13 @@ function leaveWhere(it: Iterate, mu: Float64Array): void {
   const { factor, side, equal, leave } = it;
   const { k, rows, held } = factor;
   const start = it.heldObjective === Number.NEGATIVE_INFINITY;
+  let worst = 0;
+  for (let j = 0; j < k; j++) if (equal[rows[j]] === 0) worst = Math.max(worst, -side[rows[j]] * mu[j]);
+  const least = start ? -DROP_SHARE * worst : 0;
   for (let j = 0; j < k; j++) {
     const i = rows[j];
-    leave[j] = equal[i] === 0 && side[i] * mu[j] < 0 && (start || held[j] === 0) ? 1 : 0;
+    leave[j] =
+      equal[i] === 0 && side[i] * mu[j] < 0 && side[i] * mu[j] <= least && (start || held[j] === 0) ? 1 : 0;
     if (leave[j] === 1) side[i] = 0;
   }
   factor.removeMarked(leave);
