@@ -5,7 +5,7 @@ import { dirname, join } from 'node:path';
 import { fileURLToPath } from 'node:url';
 
 const folder = dirname(fileURLToPath(import.meta.url));
-const helpers = ['all.mjs', 'measure.mjs'];
+const helpers = ['all.mjs', 'measure.mjs', 'qpRivals.mjs', 'qpSequences.mjs'];
 let failed = 0;
 for (const file of readdirSync(folder).sort()) {
   if (!file.endsWith('.mjs') || helpers.includes(file)) continue;
