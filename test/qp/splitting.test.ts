@@ -1,11 +1,12 @@
 import { describe, expect, it } from 'vitest';
 import { createRandom, deriveSeed, drawNormal } from '../../src/numerics/random.ts';
+import { equilibrate } from '../../src/qp/equilibrate.ts';
 import { createExactSolver } from '../../src/qp/exact.ts';
 import { createSplitState, iterateDouble, type iterateSingle } from '../../src/qp/splitIterations.ts';
 import { createSplittingSolver, type SplittingSettings } from '../../src/qp/splitting.ts';
 import { UnusableQpError } from '../../src/qp/unusableQp.ts';
 import { dataOf, judge, type Program, proves, structureOf } from '../helpers/qpJudge.ts';
-import { drawProgram, drawSize, KINDS } from '../helpers/qpRandom.ts';
+import { drawProgram, drawSize, KINDS, type Kind } from '../helpers/qpRandom.ts';
 
 const INF = Number.POSITIVE_INFINITY;
 
@@ -164,11 +165,46 @@ describe('the proximal step of a soft row', () => {
   });
 });
 
+describe('the equilibration', () => {
+  it('makes P = c D H D, A = E G D with rows of [P/c Aᵀ; A 0] of largest entry 1 to 2 %, for data over 1e±6', () => {
+    const random = createRandom(60);
+    const { program } = drawProgram(random, 'plain', 12, 1e3, 1);
+    const size = program.q.map(() => 10 ** (6 * random() - 3));
+    const H = program.H.map((row, i) => row.map((h, j) => h * size[i] * size[j]));
+    const G = program.G.map((row) => {
+      const factor = 10 ** (6 * random() - 3);
+      return row.map((g) => g * factor);
+    });
+    const structure = structureOf({ ...program, H, G });
+    const { P, A, D, E, c } = equilibrate(structure);
+    const n = H.length;
+    const largest = (values: readonly number[]) => Math.max(...values.map(Math.abs));
+    const P1 = H.map((row, i) => row.map((h, j) => D[i] * h * D[j]));
+    const A1 = G.map((row, i) => row.map((g, j) => E[i] * g * D[j]));
+    P1.flat().forEach((value, k) => {
+      expect(Math.abs(P[k] - c * value)).toBeLessThan(1e-14 * largest(P1.flat()) * c);
+    });
+    A1.flat().forEach((value, k) => {
+      expect(Math.abs(A[k] - value)).toBeLessThan(1e-14);
+    });
+    for (const row of A1) expect(Math.abs(largest(row) - 1)).toBeLessThan(0.02);
+    for (let j = 0; j < n; j++) {
+      expect(Math.abs(largest([...P1[j], ...A1.map((row) => row[j])]) - 1)).toBeLessThan(0.02);
+    }
+    const mean = P1.reduce((sum, row) => sum + largest(row) / n, 0);
+    expect(Math.abs(c * mean - 1)).toBeLessThan(1e-12);
+  });
+});
+
 describe('the fixed mode', () => {
-  const drawn = (seed: number) => drawProgram(createRandom(seed), 'condensed', 10, 50, 1).program;
+  const drawn = (seed: number, kind: Kind = 'condensed') =>
+    drawProgram(createRandom(seed), kind, 10, 50, 1).program;
 
   it('in single precision gives, bit by bit, what the formulas give with every operation stored in a Float32Array (twin)', () => {
-    const program = drawn(54);
+    for (const kind of ['condensed', 'soft'] as const) checkSingle(drawn(54, kind));
+  });
+
+  const checkSingle = (program: Program) => {
     const solver = createSplittingSolver(structureOf(program), { iterations: 40, precision: 'single' });
     const { state } = solver.arithmetic;
     const result = solver.solve(...dataOf(program));
@@ -176,10 +212,10 @@ describe('the fixed mode', () => {
     expect(Array.from(state.x)).toEqual(Array.from(twin.x));
     expect(Array.from(state.y)).toEqual(Array.from(twin.y));
     expect(result.iterations).toBe(40);
-  });
+  };
 
   it('in double gives, bit by bit, what the formulas give operation by operation (twin)', () => {
-    const program = drawn(55);
+    const program = drawn(55, 'soft');
     const solver = createSplittingSolver(structureOf(program), { iterations: 25 });
     const { state } = solver.arithmetic;
     solver.solve(...dataOf(program));
